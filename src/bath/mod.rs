@@ -1,0 +1,21 @@
+//! The bath: the project file, the recipe in trade units, limits and operating ranges, and how they become totals
+//! in mol/L of a chemical system.
+//!
+//! This floor may read and write files; it knows no dose search, no sheet and no window.
+
+mod error;
+mod file;
+mod history;
+mod operating;
+mod project;
+mod recipe;
+mod resolve;
+
+pub use error::BathError;
+pub use file::{FileError, load, read, save, write};
+pub use history::History;
+pub use operating::{Ph, Range};
+pub use project::{
+    Adjust, AgentDose, Content, FORMAT, Limit, Project, Rule, SheetDetails, SolidRule, Tank, Trust,
+};
+pub use resolve::{Agent, Bath, Point, ResolvedLimit, Wall};

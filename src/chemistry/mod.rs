@@ -1,0 +1,31 @@
+//! Formulas, equilibrium constants with their sources, and bought products.
+//!
+//! The numbers live in `assets/constants/*.ron` and `assets/products.ron`, where a chemist can read and edit them;
+//! this floor reads them, checks that every reaction balances, and resolves each species to its components. It
+//! knows nothing of baths, solvers or files on disk.
+
+mod constant;
+mod error;
+mod formula;
+mod library;
+mod notation;
+mod product;
+mod reaction;
+mod resolve;
+mod solid_record;
+
+pub use constant::{Basis, Component, ComponentKind, Constant, Convention};
+pub use error::ChemistryError;
+pub use formula::Formula;
+pub use library::{Library, Origin, OwnConstants, Solid, Species};
+pub use notation::{pretty, pretty_reaction};
+pub use product::{Assay, Catalogue, Evidence, Form, PriceRange, Product, Role};
+pub use reaction::{Reaction, charge_of};
+pub use solid_record::{Freshness, SolidRecord};
+
+/// Token of the hydrogen ion.
+pub const PROTON: &str = "H+";
+/// Token of the hydroxide ion.
+pub const HYDROXIDE: &str = "OH-";
+/// Token of water, which is the solvent and never a component.
+pub const WATER: &str = "H2O";

@@ -1,0 +1,179 @@
+//! Exact derivatives of a solution by its totals, its constants and its held activities.
+//!
+//! At the solution the balances, the saturation of the present solids and the definition of ionic strength hold
+//! together; differentiating them gives one linear system for every question.
+
+use super::error::EquilibriumError;
+use super::solver::{Equilibrium, Problem};
+use nalgebra::{DMatrix, DVector, Dyn, LU};
+
+/// The factored linear response of a solution.
+pub struct Sensitivities<'a> {
+    problem: Problem<'a>,
+    solution: &'a Equilibrium,
+    free: Vec<usize>,
+    solids: Vec<usize>,
+    factor: LU<f64, Dyn, Dyn>,
+}
+
+/// Response of a solution to one input.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Response {
+    /// d ln a of each component; 0 for absent ones.
+    pub ln_a: Vec<f64>,
+    /// d n of each solid.
+    pub solids: Vec<f64>,
+    /// d I.
+    pub ionic_strength: f64,
+}
+
+impl<'a> Sensitivities<'a> {
+    /// Factors the linear response at a solution.
+    ///
+    /// # Errors
+    /// [`EquilibriumError::NotConverged`] when the response is singular, which a solution with independent
+    /// solids never is.
+    pub fn new(problem: Problem<'a>, solution: &'a Equilibrium) -> Result<Self, EquilibriumError> {
+        let free: Vec<usize> = (0..problem.totals.len())
+            .filter(|&i| problem.held[i].is_none() && solution.ln_a[i].is_finite())
+            .collect();
+        let solids: Vec<usize> = (0..solution.solids.len()).filter(|&k| solution.solids[k] > 0.0).collect();
+        let (m, s) = (free.len(), solids.len());
+        let place = |component: usize| free.iter().position(|&i| i == component);
+        let mut matrix = DMatrix::<f64>::zeros(m + s + 1, m + s + 1);
+        for (species, &c) in problem.system.species.iter().zip(&solution.c) {
+            let z2 = species.charge * species.charge;
+            let weight = strength_weight(&problem, solution, species.charge);
+            for &(i, nu) in &species.components {
+                let Some(row) = place(i) else { continue };
+                for &(k, other) in &species.components {
+                    if let Some(column) = place(k) {
+                        matrix[(row, column)] += nu * other * c;
+                    }
+                }
+                matrix[(row, m + s)] += nu * c * z2 * solution.gamma.1;
+                matrix[(m + s, row)] -= weight * nu * c;
+            }
+            matrix[(m + s, m + s)] -= weight * c * z2 * solution.gamma.1;
+        }
+        matrix[(m + s, m + s)] += 1.0;
+        for (k, &solid) in solids.iter().enumerate() {
+            for &(i, nu) in &problem.system.solids[solid].components {
+                if let Some(row) = place(i) {
+                    matrix[(row, m + k)] += nu;
+                    matrix[(m + k, row)] += nu;
+                }
+            }
+        }
+        let factor = matrix.lu();
+        if !factor.is_invertible() {
+            let residual = solution.certificate.balance_residual;
+            return Err(EquilibriumError::NotConverged { residual, iterations: 0 });
+        }
+        Ok(Self { problem, solution, free, solids, factor })
+    }
+
+    /// Response to the total of a component, per mol/L.
+    pub fn by_total(&self, component: usize) -> Response {
+        let mut rhs = self.zero();
+        if let Some(row) = self.free.iter().position(|&i| i == component) {
+            rhs[row] = 1.0;
+        }
+        self.respond(rhs, &[])
+    }
+
+    /// Response to ln a of a held component (for H⁺: −ln 10 times the response to pH).
+    pub fn by_held(&self, component: usize) -> Response {
+        let shift = |terms: &[(usize, f64)]| {
+            terms.iter().filter(|(i, _)| *i == component).map(|(_, nu)| nu).sum::<f64>()
+        };
+        let species: Vec<f64> = self.problem.system.species.iter().map(|s| shift(&s.components)).collect();
+        let solids: Vec<f64> = self.problem.system.solids.iter().map(|s| -shift(&s.components)).collect();
+        let mut response = self.by_shift(&species, &solids);
+        response.ln_a[component] = 1.0;
+        response
+    }
+
+    /// Response to ln K of one published constant, which moves every species and solid in whose chain it stands.
+    pub fn by_constant(&self, constant: usize) -> Response {
+        let count = |chain: &[(usize, f64)]| {
+            chain.iter().filter(|(index, _)| *index == constant).map(|(_, n)| n).sum::<f64>()
+        };
+        let species: Vec<f64> = self.problem.system.species.iter().map(|s| count(&s.chain)).collect();
+        let solids: Vec<f64> = self.problem.system.solids.iter().map(|s| count(&s.chain)).collect();
+        self.by_shift(&species, &solids)
+    }
+
+    /// Response to a shift of ln β of every species and of ln Ks of every solid.
+    pub fn by_shift(&self, ln_beta: &[f64], ln_ks: &[f64]) -> Response {
+        let (m, s) = (self.free.len(), self.solids.len());
+        let mut rhs = self.zero();
+        for ((species, &c), &shift) in self.problem.system.species.iter().zip(&self.solution.c).zip(ln_beta) {
+            if shift == 0.0 || c == 0.0 {
+                continue;
+            }
+            for &(i, nu) in &species.components {
+                if let Some(row) = self.free.iter().position(|&free| free == i) {
+                    rhs[row] -= nu * c * shift;
+                }
+            }
+            rhs[m + s] += strength_weight(&self.problem, self.solution, species.charge) * c * shift;
+        }
+        let shifts: Vec<(usize, f64)> =
+            self.solids.iter().enumerate().map(|(k, &solid)| (m + k, ln_ks[solid])).collect();
+        self.respond(rhs, &shifts)
+    }
+
+    /// d ln(free concentration) of a component from a response.
+    pub fn ln_free(&self, response: &Response, component: usize) -> f64 {
+        let z2 = self.problem.system.species[component].charge.powi(2);
+        response.ln_a[component] + z2 * self.solution.gamma.1 * response.ionic_strength
+    }
+
+    /// Standard uncertainty of log10 of a free concentration, first order in the constants' uncertainties. A
+    /// published constant counts once, in all species whose chain it stands in.
+    pub fn sigma_log10_free(&self, component: usize) -> f64 {
+        let variance: f64 = self
+            .problem
+            .system
+            .constants
+            .iter()
+            .enumerate()
+            .map(|(index, constant)| {
+                let slope = self.ln_free(&self.by_constant(index), component);
+                (slope * constant.sigma_ln / super::LN_10).powi(2)
+            })
+            .sum();
+        variance.sqrt()
+    }
+
+    fn zero(&self) -> DVector<f64> {
+        DVector::zeros(self.free.len() + self.solids.len() + 1)
+    }
+
+    fn respond(&self, mut rhs: DVector<f64>, shifts: &[(usize, f64)]) -> Response {
+        for &(row, value) in shifts {
+            rhs[row] += value;
+        }
+        let solved = self.factor.solve(&rhs).unwrap_or_else(|| self.zero());
+        let (m, s) = (self.free.len(), self.solids.len());
+        let mut response = Response {
+            ln_a: vec![0.0; self.problem.totals.len()],
+            solids: vec![0.0; self.solution.solids.len()],
+            ionic_strength: solved[m + s],
+        };
+        for (row, &i) in self.free.iter().enumerate() {
+            response.ln_a[i] = solved[row];
+        }
+        for (k, &solid) in self.solids.iter().enumerate() {
+            response.solids[solid] = solved[m + k];
+        }
+        response
+    }
+}
+
+/// ∂I/∂c of a species: ½ z², and ½ |z| of the counter-ion it calls for.
+fn strength_weight(problem: &Problem, solution: &Equilibrium, charge: f64) -> f64 {
+    let counter = if problem.counter_ion { solution.charge_gap.signum() * charge } else { 0.0 };
+    0.5 * (charge * charge + counter)
+}

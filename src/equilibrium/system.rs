@@ -1,0 +1,100 @@
+//! The numbers of a chemical system: components, species, solids and the constants that make them.
+
+use super::activity::ActivityModel;
+use super::temperature::ConstantModel;
+use super::water::debye_huckel_a;
+
+/// A sparse row: (index, coefficient).
+pub type Terms = Vec<(usize, f64)>;
+
+/// A species in solution; the first species of a system are its bare components, in order.
+#[derive(Clone, Debug, PartialEq)]
+pub struct SpeciesEntry {
+    /// Name with charge.
+    pub token: String,
+    /// Charge number.
+    pub charge: f64,
+    /// Components it is made of.
+    pub components: Terms,
+    /// Constants in its overall formation constant.
+    pub chain: Terms,
+}
+
+/// A solid.
+#[derive(Clone, Debug, PartialEq)]
+pub struct SolidEntry {
+    /// Name with its state.
+    pub token: String,
+    /// Exponents of the ion activity product over components.
+    pub components: Terms,
+    /// Constants in its overall solubility product.
+    pub chain: Terms,
+    /// Whether it is an aged form.
+    pub aged: bool,
+}
+
+/// Components, species and solids that can occur in a bath.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct System {
+    /// Tokens of the components.
+    pub components: Vec<String>,
+    /// Species; `species[i]` is the bare component i for i below the number of components.
+    pub species: Vec<SpeciesEntry>,
+    /// Solids.
+    pub solids: Vec<SolidEntry>,
+    /// The constants that the chains refer to.
+    pub constants: Vec<ConstantModel>,
+    /// The same constants in the library that the system was assembled from, for their sources.
+    pub library_constants: Vec<usize>,
+    /// Index of H⁺ among the components.
+    pub proton: Option<usize>,
+}
+
+/// A system's constants at one temperature and for one activity model.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Constants {
+    /// Overall ln β of each species.
+    pub ln_beta: Vec<f64>,
+    /// Overall ln Ks of each solid.
+    pub ln_ks: Vec<f64>,
+    /// Activity model.
+    pub model: ActivityModel,
+    /// Debye–Hückel slope A at this temperature.
+    pub slope_a: f64,
+}
+
+fn sum(chain: &Terms, ln_k: &[f64]) -> f64 {
+    chain.iter().map(|&(index, count)| count * ln_k[index]).sum()
+}
+
+impl System {
+    /// Overall constants at a temperature in kelvin.
+    pub fn constants_at(&self, temperature_k: f64, model: ActivityModel) -> Constants {
+        let ln_k: Vec<f64> = self.constants.iter().map(|c| c.ln_k_at(temperature_k, model)).collect();
+        Constants {
+            ln_beta: self.species.iter().map(|species| sum(&species.chain, &ln_k)).collect(),
+            ln_ks: self.solids.iter().map(|solid| sum(&solid.chain, &ln_k)).collect(),
+            model,
+            slope_a: debye_huckel_a(temperature_k),
+        }
+    }
+
+    /// Index of a component by token.
+    pub fn component(&self, token: &str) -> Option<usize> {
+        self.components.iter().position(|known| known == token)
+    }
+
+    /// Index of a species by token.
+    pub fn species_index(&self, token: &str) -> Option<usize> {
+        self.species.iter().position(|species| species.token == token)
+    }
+
+    /// How often a component is in a species.
+    pub fn coefficient(&self, species: usize, component: usize) -> f64 {
+        self.species[species]
+            .components
+            .iter()
+            .find(|(index, _)| *index == component)
+            .map_or(0.0, |(_, c)| *c)
+    }
+}
