@@ -1,5 +1,7 @@
 #![forbid(unsafe_code)]
 pub mod bath;
 pub mod chemistry;
+pub mod dosing;
 pub mod equilibrium;
 pub mod quantity;
+pub mod study;

@@ -5,6 +5,7 @@
 
 mod error;
 mod file;
+mod flags;
 mod history;
 mod operating;
 mod project;
@@ -13,9 +14,11 @@ mod resolve;
 
 pub use error::BathError;
 pub use file::{FileError, load, read, save, write};
+pub use flags::{Flag, flags};
 pub use history::History;
 pub use operating::{Ph, Range};
 pub use project::{
     Adjust, AgentDose, Content, FORMAT, Limit, Project, Rule, SheetDetails, SolidRule, Tank, Trust,
 };
-pub use resolve::{Agent, Bath, Point, ResolvedLimit, Wall};
+pub use recipe::proton_moles_per_gram;
+pub use resolve::{Agent, Bath, Point, ResolvedLimit, Solids, Wall};

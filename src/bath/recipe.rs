@@ -65,7 +65,9 @@ pub fn resolve(
                     })?
                 }
                 Dimension::Volume => {
-                    return Err(misfit("mL/L needs a liquid product; give g/L or mol/L, or choose a product"));
+                    return Err(misfit(
+                        "mL/L needs a liquid product; give g/L or mol/L, or choose a product",
+                    ));
                 }
             };
             Ok(Moles::from([(index, moles)]))

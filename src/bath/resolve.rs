@@ -4,7 +4,7 @@ use super::error::BathError;
 use super::operating::{Ph, Range};
 use super::project::{Project, Rule};
 use super::recipe::{self, Moles};
-use crate::chemistry::{Catalogue, ComponentKind, Library, Product};
+use crate::chemistry::{Catalogue, ComponentKind, Library, PROTON, Product};
 use crate::equilibrium::{
     Constants, Equilibrium, EquilibriumError, LN_10, Problem, Sensitivities, Solver, System, assemble,
 };
@@ -86,7 +86,7 @@ pub struct Bath {
 
 /// Which solids take part in an equilibrium.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub(crate) enum Solids {
+pub enum Solids {
     /// All that form in the time of a shift: what will be in the tank.
     Real,
     /// Only those that may; the others stay dissolved, so that their saturation index tells how far off a dose is.
@@ -132,9 +132,18 @@ impl Bath {
             }
             agents.push((found, moles));
         }
-        // A bath that brings its whole chemistry need not know the shop's acid and alkali.
         let alkali = product("adjust.alkali", &project.adjust.alkali)?;
         let acid = product("adjust.acid", &project.adjust.acid)?;
+        for (field, product, wrong) in [
+            ("adjust.alkali", &alkali, alkali.released(PROTON) >= 0.0),
+            ("adjust.acid", &acid, acid.released(PROTON) <= 0.0),
+        ] {
+            if wrong {
+                let fix = "it brings no hydroxide (alkali) or no hydrogen ion (acid); choose one that does";
+                let name = product.name.clone();
+                return Err(BathError::Unknown { field: field.to_owned(), name, fix: fix.to_owned() });
+            }
+        }
         let mut present: Vec<usize> = library.proton().into_iter().collect();
         let brought = all.iter().chain(agents.iter().map(|(_, moles)| moles)).flat_map(|moles| moles.keys());
         for &component in brought {
@@ -218,7 +227,7 @@ impl Bath {
     }
 
     /// As [`Bath::solve`], with solids that must not form kept in solution.
-    pub(crate) fn solve_with(
+    pub fn solve_with(
         &self,
         solver: &mut Solver,
         constants: &Constants,
@@ -230,7 +239,7 @@ impl Bath {
     }
 
     /// Solves for given totals; with a free pH the total of H⁺ decides it.
-    pub(crate) fn solve_totals(
+    pub fn solve_totals(
         &self,
         solver: &mut Solver,
         constants: &Constants,
@@ -250,18 +259,18 @@ impl Bath {
         })
     }
 
-    /// Standard uncertainty of log10 of a free concentration at a solved point.
+    /// Exact derivatives at a solved point, handed to `ask`.
     ///
     /// # Errors
     /// [`EquilibriumError`] when the response is singular.
-    pub(crate) fn sigma_log10_free(
+    pub fn sensitivities<T>(
         &self,
         constants: &Constants,
         point: Point,
         solids: Solids,
         solution: &Equilibrium,
-        component: usize,
-    ) -> Result<f64, EquilibriumError> {
+        ask: impl FnOnce(&Sensitivities) -> T,
+    ) -> Result<T, EquilibriumError> {
         let (totals, held, may_form) = (self.totals(point.doses), self.held(point.ph), self.may_form(solids));
         let problem = Problem {
             system: &self.system,
@@ -271,7 +280,7 @@ impl Bath {
             may_form: &may_form,
             counter_ion: true,
         };
-        Ok(Sensitivities::new(problem, solution)?.sigma_log10_free(component))
+        Ok(ask(&Sensitivities::new(problem, solution)?))
     }
 
     fn held(&self, ph: Option<f64>) -> Vec<Option<f64>> {

@@ -133,15 +133,25 @@ impl<'a> Sensitivities<'a> {
     /// Standard uncertainty of log10 of a free concentration, first order in the constants' uncertainties. A
     /// published constant counts once, in all species whose chain it stands in.
     pub fn sigma_log10_free(&self, component: usize) -> f64 {
-        let variance: f64 = self
-            .problem
-            .system
-            .constants
-            .iter()
-            .enumerate()
+        self.sigma_log10(|_, response| self.ln_free(response, component))
+    }
+
+    /// Standard uncertainty of a saturation index, first order in the constants' uncertainties.
+    pub fn sigma_saturation_index(&self, solid: usize) -> f64 {
+        let entry = &self.problem.system.solids[solid];
+        self.sigma_log10(|constant, response| {
+            let product: f64 = entry.components.iter().map(|&(i, nu)| nu * response.ln_a[i]).sum();
+            let own = entry.chain.iter().find(|(index, _)| *index == constant).map_or(0.0, |(_, n)| *n);
+            product - own
+        })
+    }
+
+    fn sigma_log10(&self, slope: impl Fn(usize, &Response) -> f64) -> f64 {
+        let constants = self.problem.system.constants.iter().enumerate();
+        let variance: f64 = constants
             .map(|(index, constant)| {
-                let slope = self.ln_free(&self.by_constant(index), component);
-                (slope * constant.sigma_ln / super::LN_10).powi(2)
+                let response = self.by_constant(index);
+                (slope(index, &response) * constant.sigma_ln / super::LN_10).powi(2)
             })
             .sum();
         variance.sqrt()

@@ -164,10 +164,7 @@ mod tests {
     fn records(sheet: &DosingSheet) -> Vec<Vec<String>> {
         let text = to_csv(sheet).expect("the sheet can be written");
         let mut reader = ::csv::ReaderBuilder::new().has_headers(false).from_reader(text.as_bytes());
-        reader
-            .records()
-            .map(|r| r.expect("rows are even").iter().map(str::to_owned).collect())
-            .collect()
+        reader.records().map(|r| r.expect("rows are even").iter().map(str::to_owned).collect()).collect()
     }
 
     #[test]

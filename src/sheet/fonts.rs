@@ -3,6 +3,8 @@
 //! Why measure with the shaper: the PDF writer shapes with the same library, so a line that fits here fits on paper,
 //! kerning included.
 
+use std::cell::RefCell;
+use std::collections::HashMap;
 use std::sync::LazyLock;
 
 use rustybuzz::ttf_parser::GlyphId;
@@ -15,9 +17,17 @@ pub const REGULAR_TTF: &[u8] = include_bytes!("../../assets/fonts/sans-regular.t
 /// The bold sans font (TrueType).
 pub const BOLD_TTF: &[u8] = include_bytes!("../../assets/fonts/sans-bold.ttf");
 
-static REGULAR: LazyLock<Option<Face<'static>>> =
-    LazyLock::new(|| Face::from_slice(REGULAR_TTF, 0));
+static REGULAR: LazyLock<Option<Face<'static>>> = LazyLock::new(|| Face::from_slice(REGULAR_TTF, 0));
 static BOLD: LazyLock<Option<Face<'static>>> = LazyLock::new(|| Face::from_slice(BOLD_TTF, 0));
+
+/// Texts whose widths are remembered, for each weight; a long sheet has about 2000 different words and lines.
+const MOST_REMEMBERED: usize = 8192;
+
+thread_local! {
+    /// Widths already measured, regular and bold. Trying several densities asks for the same words again and again,
+    /// and shaping is nine tenths of the time of a layout.
+    static MEASURED: RefCell<(HashMap<String, i32>, HashMap<String, i32>)> = RefCell::default();
+}
 
 /// Width of a character in em when a font cannot be read; wide enough that lines only get shorter.
 const FALLBACK_EM: f32 = 0.95;
@@ -34,20 +44,38 @@ pub(super) fn width_pt(text: &str, size_pt: f32, weight: Weight) -> f32 {
     let Some(face) = face(weight) else {
         return text.chars().count() as f32 * FALLBACK_EM * size_pt;
     };
+    let units = MEASURED.with_borrow_mut(|measured| {
+        let widths = match weight {
+            Weight::Regular => &mut measured.0,
+            Weight::Bold => &mut measured.1,
+        };
+        if let Some(units) = widths.get(text) {
+            return *units;
+        }
+        if widths.len() >= MOST_REMEMBERED {
+            widths.clear();
+        }
+        let units = shaped_width(face, text);
+        widths.insert(text.to_owned(), units);
+        units
+    });
+    units as f32 * size_pt / face.units_per_em() as f32
+}
+
+/// Width in the font's own units.
+fn shaped_width(face: &Face<'_>, text: &str) -> i32 {
     let mut buffer = UnicodeBuffer::new();
     buffer.push_str(text);
     buffer.guess_segment_properties();
     buffer.set_direction(Direction::LeftToRight);
     let shaped = rustybuzz::shape(face, &[], buffer);
-    let units: i32 = shaped.glyph_positions().iter().map(|p| p.x_advance).sum();
-    units as f32 * size_pt / face.units_per_em() as f32
+    shaped.glyph_positions().iter().map(|p| p.x_advance).sum()
 }
 
 /// Whether both fonts can show `character`.
 fn has_glyph(character: char) -> bool {
-    let in_face = |weight| {
-        face(weight).is_none_or(|f| f.glyph_index(character).is_some_and(|g| g != GlyphId(0)))
-    };
+    let in_face =
+        |weight| face(weight).is_none_or(|f| f.glyph_index(character).is_some_and(|g| g != GlyphId(0)));
     in_face(Weight::Regular) && in_face(Weight::Bold)
 }
 

@@ -20,12 +20,10 @@ pub use csv::to_csv;
 pub use error::SheetError;
 pub use fonts::{BOLD_TTF, REGULAR_TTF, printable};
 pub use layout::{
-    CheckBox, Frame, Item, Join, LaidOut, Page, Paper, Place, Role, Rule, TextRun, Weight,
-    WriteIn, lay_out,
+    CheckBox, Frame, Item, Join, LaidOut, Page, Paper, Place, Role, Rule, TextRun, Weight, WriteIn, lay_out,
 };
 pub use model::{
-    Addition, Align, Column, DosingSheet, FileCopy, Finding, Header, Retest, RetestColumn, Table,
-    Target,
+    Addition, Align, Column, DosingSheet, FileCopy, Finding, Header, Retest, RetestColumn, Table, Target,
 };
 pub use pdf::to_pdf;
 pub use text::to_text;

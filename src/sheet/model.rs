@@ -184,11 +184,7 @@ impl DosingSheet {
     ///
     /// Every writer asks this instead of the field, so a refused dose cannot slip into one of the formats.
     pub fn printed_additions(&self) -> &[Addition] {
-        if self.refused.is_some() {
-            &[]
-        } else {
-            &self.additions
-        }
+        if self.refused.is_some() { &[] } else { &self.additions }
     }
 }
 

@@ -155,7 +155,8 @@ mod tests {
                 let file = folder.join(format!("{name}-{paper:?}"));
                 let bytes = to_pdf(&laid_out).expect("the sample can be written");
                 std::fs::write(file.with_extension("pdf"), bytes).expect("written");
-                std::fs::write(file.with_extension("txt"), crate::sheet::to_text(&laid_out)).expect("written");
+                std::fs::write(file.with_extension("txt"), crate::sheet::to_text(&laid_out))
+                    .expect("written");
             }
             let csv = crate::sheet::to_csv(&sheet).expect("the sample can be written");
             std::fs::write(folder.join(format!("{name}.csv")), csv).expect("written");

@@ -1,8 +1,8 @@
 //! Invented sheets for the tests of this module.
 
 use super::{
-    Addition, Align, Column, DosingSheet, FileCopy, Finding, Header, Item, LaidOut, Retest, RetestColumn, Table, Target,
-    TextRun,
+    Addition, Align, Column, DosingSheet, FileCopy, Finding, Header, Item, LaidOut, Retest, RetestColumn,
+    Table, Target, TextRun,
 };
 
 fn strings(items: &[&str]) -> Vec<String> {
@@ -159,8 +159,16 @@ fn steps() -> Vec<Addition> {
 
 fn file_copy() -> FileCopy {
     let (l, r) = (Align::Left, Align::Right);
-    let constant: &[&str] = &["Cu²⁺ + L⁴⁻ → CuL²⁻", "12.48", "42 °C, 1.6", "0.10", "mixed, ΔH known", "Demo Tables (2001), p. 12, entry 4"];
-    let weak: &[&str] = &["Ca²⁺ + HL³⁻ → CaHL⁻", "3.6", "25 °C, 0.1", "0.2", "concentration, no ΔH", "from memory"];
+    let constant: &[&str] = &[
+        "Cu²⁺ + L⁴⁻ → CuL²⁻",
+        "12.48",
+        "42 °C, 1.6",
+        "0.10",
+        "mixed, ΔH known",
+        "Demo Tables (2001), p. 12, entry 4",
+    ];
+    let weak: &[&str] =
+        &["Ca²⁺ + HL³⁻ → CaHL⁻", "3.6", "25 °C, 0.1", "0.2", "concentration, no ΔH", "from memory"];
     FileCopy {
         tables: vec![
             table(
@@ -176,29 +184,56 @@ fn file_copy() -> FileCopy {
             ),
             table(
                 "Margins over the operating window",
-                &[("scenario", l, 2.2), ("free copper, mol/L", r, 1.0), ("share of the ceiling, %", r, 1.0), ("at 95 %, %", r, 1.0)],
+                &[
+                    ("scenario", l, 2.2),
+                    ("free copper, mol/L", r, 1.0),
+                    ("share of the ceiling, %", r, 1.0),
+                    ("at 95 %, %", r, 1.0),
+                ],
                 &[
                     &["set point", "1.1e−11", "55", "78"],
                     &["pH 9.2, copper 11.5 g/L (worst)", "1.4e−11", "69", "97"],
                     &["pH 9.8, 45 °C", "0.9e−11", "45", "64"],
                 ],
             ),
-            table("Solids", &[("solid", l, 2.0), ("saturation index", r, 1.0), ("formed", l, 1.0)], &[&["Cu(OH)₂", "−2.1", "no"], &["CuO (slow)", "−0.8", "no"], &["CaCO₃ (calcite)", "−0.3", "no"]]),
+            table(
+                "Solids",
+                &[("solid", l, 2.0), ("saturation index", r, 1.0), ("formed", l, 1.0)],
+                &[
+                    &["Cu(OH)₂", "−2.1", "no"],
+                    &["CuO (slow)", "−0.8", "no"],
+                    &["CaCO₃ (calcite)", "−0.3", "no"],
+                ],
+            ),
             table(
                 "Constants used",
-                &[("reaction", l, 2.2), ("log K used", r, 0.8), ("at T, I", l, 1.0), ("σ", r, 0.6), ("basis", l, 1.5), ("source", l, 2.4)],
+                &[
+                    ("reaction", l, 2.2),
+                    ("log K used", r, 0.8),
+                    ("at T, I", l, 1.0),
+                    ("σ", r, 0.6),
+                    ("basis", l, 1.5),
+                    ("source", l, 2.4),
+                ],
                 &[constant, weak, constant, weak, constant, weak, constant, weak],
             ),
         ],
-        flags: strings(&["Ionic strength 1.6 mol/L is above the Davies range (0.5): SIT used.", "Two constants have no ΔH: used as they are, σ widened to 0.2."]),
-        certificate: strings(&["largest balance residual 3e−14, KKT residual 0, charge gap 2e−16 mol/L", "11 iterations, 8 components, 43 species, 3 solids"]),
+        flags: strings(&[
+            "Ionic strength 1.6 mol/L is above the Davies range (0.5): SIT used.",
+            "Two constants have no ΔH: used as they are, σ widened to 0.2.",
+        ]),
+        certificate: strings(&[
+            "largest balance residual 3e−14, KKT residual 0, charge gap 2e−16 mol/L",
+            "11 iterations, 8 components, 43 species, 3 solids",
+        ]),
     }
 }
 
 /// Nine additions with long names: the operator's part takes more than one page.
 pub(super) fn nine_additions() -> DosingSheet {
     let mut sheet = four_additions();
-    sheet.header.bath = "alkaline zinc–nickel for fasteners, drum line with the long name nobody shortens".into();
+    sheet.header.bath =
+        "alkaline zinc–nickel for fasteners, drum line with the long name nobody shortens".into();
     sheet.header.prepared_by = None;
     sheet.header.valid_until = None;
     let mut all = steps();
@@ -217,7 +252,13 @@ pub(super) fn nine_additions() -> DosingSheet {
     }
     sheet.additions = all;
     sheet.found.push(finding("Zinc", "9.8 g/L", "range 8 to 12", "measured 07:55", false));
-    sheet.found.push(finding("Total hardness of the top-up water", "214 mg/L CaCO₃", "under 100", "assumed", true));
+    sheet.found.push(finding(
+        "Total hardness of the top-up water",
+        "214 mg/L CaCO₃",
+        "under 100",
+        "assumed",
+        true,
+    ));
     sheet
 }
 

@@ -10,13 +10,16 @@ use super::table::{Grid, Row, TableSpec, place};
 use super::widths::{Need, share};
 use crate::sheet::model::{Addition, Align};
 
-/// Widths of the narrow columns, points: step number, amount, pH, initials.
+/// Widths of the columns that are the same on every sheet, points: step number, amount, initials.
 const STEP_WIDTH: f32 = 29.0;
 const AMOUNT_WIDTH: f32 = 142.0;
-const PH_WIDTH: f32 = 82.0;
 const INITIALS_WIDTH: f32 = 48.0;
+/// Index of the pH column, and the least and most width it takes, points.
+const PH: usize = 4;
+const PH_LEAST: f32 = 76.0;
+const PH_MOST: f32 = 100.0;
 /// Width of the left part of the STOP box, and the space beside its texts, points.
-const STOP_WIDTH: f32 = 136.0;
+const STOP_WIDTH: f32 = 119.0;
 const STOP_PAD: f32 = 7.0;
 
 /// The additions in order, amounts in heavy boxes.
@@ -37,9 +40,11 @@ pub(super) fn additions(flow: &mut Flow, additions: &[Addition]) {
         label("Then pH must read").align(Align::Centre),
         label("Time, initials").align(Align::Centre),
     ]);
-    let rest = flow.area.width() - STEP_WIDTH - AMOUNT_WIDTH - PH_WIDTH - INITIALS_WIDTH;
-    let widths = vec![STEP_WIDTH, rest * 0.52, AMOUNT_WIDTH, rest * 0.48, PH_WIDTH, INITIALS_WIDTH];
-    let rows = additions.iter().enumerate().map(|(index, a)| step(index + 1, a, density)).collect();
+    let rows: Vec<Row> = additions.iter().enumerate().map(|(index, a)| step(index + 1, a, density)).collect();
+    let ph = rows.iter().map(|row| row.cells[PH].need().best).fold(0.0, f32::max) + 2.0 * PAD_X;
+    let ph = ph.clamp(PH_LEAST, PH_MOST);
+    let rest = flow.area.width() - STEP_WIDTH - AMOUNT_WIDTH - ph - INITIALS_WIDTH;
+    let widths = vec![STEP_WIDTH, rest * 0.52, AMOUNT_WIDTH, rest * 0.48, ph, INITIALS_WIDTH];
     let spec = TableSpec {
         header: vec![header],
         grid: Grid::Full,
@@ -48,7 +53,8 @@ pub(super) fn additions(flow: &mut Flow, additions: &[Addition]) {
         announce_steps: true,
         ..TableSpec::plain(widths, rows)
     };
-    place(flow, &spec.heading("Add in this order. Do not skip, do not swap."));
+    let heading = if additions.len() == 1 { "Add" } else { "Add in this order. Do not skip, do not swap." };
+    place(flow, &spec.heading(heading));
 }
 
 fn step(number: usize, addition: &Addition, density: Density) -> Row {
@@ -56,7 +62,9 @@ fn step(number: usize, addition: &Addition, density: Density) -> Row {
     material.extend(addition.details.iter().map(|d| Para::new(d, density.small())));
 
     let mut measure = vec![Para::of(emphasise_numbers(&addition.amount, style::AMOUNT_WORD, style::AMOUNT))];
-    measure.extend(addition.measure.iter().map(|m| Para::of(emphasise_numbers(m, Style::regular(10.5), style::NUMBER))));
+    measure.extend(
+        addition.measure.iter().map(|m| Para::of(emphasise_numbers(m, Style::regular(10.5), style::NUMBER))),
+    );
     measure.extend(addition.exact.iter().map(|e| Para::new(e, density.small())));
 
     let mut how = vec![Para::of(emphasise_numbers(&addition.how, style::WORD, style::NUMBER))];
@@ -64,10 +72,9 @@ fn step(number: usize, addition: &Addition, density: Density) -> Row {
     how.extend(addition.wait.iter().map(|time| timed("wait", time)));
 
     let then = match &addition.then_ph {
-        Some(ph) => vec![
-            Para::new(ph, style::NUMBER),
-            Para::new("read _________", density.small()).before(5.0),
-        ],
+        Some(ph) => {
+            vec![Para::new(ph, style::NUMBER), Para::new("read _________", density.small()).before(5.0)]
+        }
         None => vec![Para::new("–", style::NUMBER)],
     };
     Row::new(vec![
@@ -81,10 +88,7 @@ fn step(number: usize, addition: &Addition, density: Density) -> Row {
 }
 
 fn timed(words: &str, time: &str) -> Para {
-    Para::of(vec![
-        Span { text: format!("{words} "), style: style::WORD },
-        Span::new(time, style::NUMBER),
-    ])
+    Para::of(vec![Span { text: format!("{words} "), style: style::WORD }, Span::new(time, style::NUMBER)])
 }
 
 /// Printed in place of the additions when one is refused.
@@ -92,7 +96,8 @@ pub(super) fn refusal(flow: &mut Flow, reason: &str) {
     let text = vec![
         Para::new("NO ADDITION", style::ALARM),
         Para::new(reason, Style::bold(14.0)).before(3.0),
-        Para::new("Nothing may be added with this sheet. Call the chemist.", Style::regular(14.0)).before(4.0),
+        Para::new("Nothing may be added with this sheet. Call the chemist.", Style::regular(14.0))
+            .before(4.0),
     ];
     let spec = TableSpec {
         pad_x: 12.0,
@@ -109,14 +114,16 @@ pub(super) fn stop(flow: &mut Flow, conditions: &[String]) {
     let conditions: Vec<Para> = conditions
         .iter()
         .filter(|c| !c.trim().is_empty())
-        .map(|c| Para::of(emphasise_numbers(c, style::WORD, style::NUMBER)).bullet())
+        .map(|c| {
+            Para::of(emphasise_numbers(c, style::WORD, style::NUMBER)).bullet().spaced_for(style::NUMBER.size)
+        })
         .collect();
     if conditions.is_empty() {
         return;
     }
     let lead = vec![
         Para::new("STOP", style::ALARM),
-        Para::new("and call the chemist, ext. ______, if:", style::WORD_STRONG),
+        Para::new("and call the chemist, ext. ______, if:", Style::bold(10.0)),
     ];
     let (left, right) = conditions.split_at(conditions.len().div_ceil(2));
     let columns = [left, right].map(|half| Cell::new(Role::Bullet, half.to_vec()));

@@ -12,7 +12,7 @@ use crate::sheet::model::{Align, Column, DosingSheet, FileCopy, Table};
 /// More columns than this cannot be read side by side.
 const MOST_COLUMNS: usize = 10;
 /// Left and right of the text of a cell, points.
-const PAD_X: f32 = 4.0;
+const PAD_X: f32 = 5.0;
 
 /// Whether there is anything for the file.
 pub(super) fn is_empty(file: &FileCopy) -> bool {
@@ -33,11 +33,8 @@ pub(super) fn file_copy(flow: &mut Flow, sheet: &DosingSheet) {
 }
 
 fn list(flow: &mut Flow, heading: &str, lines: &[String]) {
-    let paras: Vec<Para> = lines
-        .iter()
-        .filter(|l| !l.trim().is_empty())
-        .map(|l| Para::new(l, style::FILE).bullet())
-        .collect();
+    let paras: Vec<Para> =
+        lines.iter().filter(|l| !l.trim().is_empty()).map(|l| Para::new(l, style::FILE).bullet()).collect();
     if paras.is_empty() {
         return;
     }
@@ -48,14 +45,9 @@ fn list(flow: &mut Flow, heading: &str, lines: &[String]) {
 
 fn place_table(flow: &mut Flow, table: &Table) {
     let table = tidy(table);
-    let cell = |role, text: &str, column: &Column, style| {
-        Cell::text(role, text, style).align(column.align)
-    };
-    let header: Vec<Cell> = table
-        .columns
-        .iter()
-        .map(|c| cell(Role::HeaderCell, &c.label, c, style::FILE_STRONG))
-        .collect();
+    let cell = |role, text: &str, column: &Column, style| Cell::text(role, text, style).align(column.align);
+    let header: Vec<Cell> =
+        table.columns.iter().map(|c| cell(Role::HeaderCell, &c.label, c, style::FILE_STRONG)).collect();
     let rows: Vec<Row> = table
         .rows
         .iter()
@@ -75,7 +67,8 @@ fn place_table(flow: &mut Flow, table: &Table) {
     place(flow, &spec.heading(&table.title));
 }
 
-/// The widths asked for, widened where a word would be broken.
+/// Widths at which nothing wraps, with the spare room shared as asked; if that is too wide, the widths asked for,
+/// widened where a word would be broken.
 fn widths(total: f32, table: &Table, header: &[Cell], rows: &[Row]) -> Vec<f32> {
     let asked: Vec<f32> = table
         .columns
@@ -83,16 +76,23 @@ fn widths(total: f32, table: &Table, header: &[Cell], rows: &[Row]) -> Vec<f32> 
         .map(|c| if c.width.is_finite() && c.width > 0.0 { c.width.clamp(0.05, 50.0) } else { 1.0 })
         .collect();
     let sum: f32 = asked.iter().sum();
-    let needs: Vec<Need> = asked
-        .iter()
-        .enumerate()
-        .map(|(index, width)| {
+    let needs: Vec<Need> = (0..asked.len())
+        .map(|index| {
             let cells = header.get(index).into_iter().chain(rows.iter().filter_map(|r| r.cells.get(index)));
-            let least = cells.map(|c| c.need().least).fold(0.0, f32::max) + 2.0 * PAD_X + 0.5;
-            Need { least, best: (total * width / sum).max(least) }
+            let need = cells.map(Cell::need).fold(Need::default(), Need::and);
+            Need { least: need.least + 2.0 * PAD_X + 0.5, best: need.best + 2.0 * PAD_X + 0.5 }
         })
         .collect();
-    share(total, &needs)
+    let natural: f32 = needs.iter().map(|n| n.best).sum();
+    if natural <= total {
+        let spare = total - natural;
+        return needs.iter().zip(&asked).map(|(need, width)| need.best + spare * width / sum).collect();
+    }
+    let as_asked = needs
+        .iter()
+        .zip(&asked)
+        .map(|(need, width)| Need { least: need.least, best: (total * width / sum).max(need.least) });
+    share(total, &as_asked.collect::<Vec<_>>())
 }
 
 /// A table whose rows all have as many cells as there are columns, with nothing dropped.

@@ -1,7 +1,7 @@
 //! The content of one table cell: paragraphs, wrapped to the cell's width.
 
-use super::item::{CheckBox, Item, Join, Place, Role, Weight, WriteIn};
 use super::flow::Flow;
+use super::item::{CheckBox, Item, Join, Place, Role, Weight, WriteIn};
 use super::rich::{Span, Style};
 use super::style::{self, Density};
 use super::widths::Need;
@@ -25,6 +25,8 @@ pub(super) struct Para {
     pub before: f32,
     /// Hung behind a bullet.
     pub bullet: bool,
+    /// Font size for which its lines are spaced at least, so that columns of a list keep step, points.
+    pub least_size: f32,
 }
 
 impl Para {
@@ -33,12 +35,18 @@ impl Para {
     }
 
     pub(super) fn of(spans: Vec<Span>) -> Self {
-        Self { spans, before: 0.0, bullet: false }
+        Self { spans, before: 0.0, bullet: false, least_size: 0.0 }
     }
 
     /// The paragraph behind a bullet, its lines hung in.
     pub(super) fn bullet(mut self) -> Self {
         self.bullet = true;
+        self
+    }
+
+    /// Spaces its lines as if they held type of this size.
+    pub(super) fn spaced_for(mut self, size: f32) -> Self {
+        self.least_size = size;
         self
     }
 
@@ -128,6 +136,7 @@ impl Cell {
             let room = width - self.indent() - para.hang();
             for (number, mut line) in wrap(&para.spans, room, &Points).into_iter().enumerate() {
                 let first = number == 0;
+                line.size = line.size.max(para.least_size);
                 if para.bullet {
                     hang(&mut line, first);
                 }
@@ -224,7 +233,12 @@ impl LaidCell {
             y += laid.gap;
             if index == 0 && self.tick_due {
                 let top = y + (laid.height - TICK_SIDE) / 2.0;
-                flow.put(Item::CheckBox(CheckBox { x: x - self.cell.indent() + 0.5, y: top, side: TICK_SIDE, place }));
+                flow.put(Item::CheckBox(CheckBox {
+                    x: x - self.cell.indent() + 0.5,
+                    y: top,
+                    side: TICK_SIDE,
+                    place,
+                }));
             }
             let spare = (width - laid.line.width).max(0.0);
             let shift = match self.cell.align {
@@ -232,7 +246,16 @@ impl LaidCell {
                 Align::Centre => spare / 2.0,
                 Align::Right => spare,
             };
-            flow.put_line(&laid.line, x + shift, y, laid.height, self.cell.role, self.cell.align, place, laid.starts);
+            flow.put_line(
+                &laid.line,
+                x + shift,
+                y,
+                laid.height,
+                self.cell.role,
+                self.cell.align,
+                place,
+                laid.starts,
+            );
             y += laid.height;
         }
     }

@@ -107,7 +107,10 @@ impl Flow {
     }
 
     /// Puts the pieces of a line with its top at `y`.
-    #[expect(clippy::too_many_arguments, reason = "a line, where it goes and what it is; a struct would be built once")]
+    #[expect(
+        clippy::too_many_arguments,
+        reason = "a line, where it goes and what it is; a struct would be built once"
+    )]
     pub(super) fn put_line(
         &mut self,
         line: &Line,

@@ -2,10 +2,10 @@
 
 use super::flow::Flow;
 use super::front::joined;
-use super::item::{Item, Place, Role, Rule};
+use super::item::{Item, Join, Place, Role, Rule};
 use super::rich::{Span, Style};
 use super::style;
-use super::wrap::{Line, Points, Ruler, wrap};
+use super::wrap::{Line, Piece, Points, Ruler, wrap};
 use crate::sheet::fonts::printable;
 use crate::sheet::model::{Align, Header};
 
@@ -34,7 +34,8 @@ impl Foot {
         let span = Span::new(&text, style::FOOTER);
         let mut stamp = wrap(&[span], width * STAMP_SHARE, &Points);
         if stamp.len() > MOST_LINES {
-            let rest: String = stamp[MOST_LINES - 1..].iter().flat_map(|l| &l.pieces).map(|p| p.text.as_str()).collect();
+            let rest: String =
+                stamp[MOST_LINES - 1..].iter().flat_map(|l| &l.pieces).map(|p| p.text.as_str()).collect();
             stamp.truncate(MOST_LINES - 1);
             stamp.extend(one_line(&rest, style::FOOTER, width * STAMP_SHARE));
         }
@@ -95,12 +96,16 @@ pub(super) fn one_line(text: &str, style: Style, width: f32) -> Option<Line> {
     if Points.width(&text, style) > width {
         while !text.is_empty() && Points.width(&format!("{text}…"), style) > width {
             let excess = text.chars().count() / 2;
-            let keep = if Points.width(&text, style) > 2.0 * width { excess } else { text.chars().count() - 1 };
+            let keep =
+                if Points.width(&text, style) > 2.0 * width { excess } else { text.chars().count() - 1 };
             text = text.chars().take(keep).collect();
         }
         text.push('…');
     }
-    // Bound together, so that rounding cannot break the line after all.
-    let span = Span { text: text.replace(' ', "\u{a0}"), style };
-    wrap(&[span], width + 1.0, &Points).into_iter().next()
+    if text.is_empty() {
+        return None;
+    }
+    let width = Points.width(&text, style);
+    let piece = Piece { text, style, x: 0.0, width, join: Join::Start };
+    Some(Line { pieces: vec![piece], width, size: style.size })
 }

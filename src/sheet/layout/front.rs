@@ -31,10 +31,12 @@ pub(super) fn sheet_name(header: &Header) -> String {
     joined(&[&header.title, number], " ")
 }
 
-/// The line at the top of following pages.
+/// The line at the top of following pages. The bath comes last: if anything has to be cut, then its name.
 pub(super) fn running_text(header: &Header) -> String {
+    let short = |text: &str| text.chars().take(36).collect::<String>();
     let banner = if header.invented { BANNER } else { "" };
-    joined(&[&tank_and_bath(header), &sheet_name(header), banner], " · ")
+    let (tank, sheet) = (short(&header.tank), short(&sheet_name(header)));
+    joined(&[&tank, &sheet, banner, &header.bath], " · ")
 }
 
 /// Joins the parts that are not blank.
@@ -69,7 +71,7 @@ pub(super) fn head(flow: &mut Flow, header: &Header) {
     let number = Cell::new(Role::Title, number).align(Align::Right);
     place(flow, &TableSpec::plain(vec![width * 0.6, width * 0.4], rows([title, number])));
     // The banner's frame needs a little room at the right edge, and stands off the line above.
-    let banner_width = if header.invented { width * 0.28 } else { 0.0 };
+    let banner_width = if header.invented { banner.need().best + 2.0 * BANNER_PAD + 8.0 } else { 0.0 };
     let widths = vec![width - banner_width, (banner_width - BANNER_PAD).max(0.0)];
     flow.y += 1.5;
     place(flow, &TableSpec::plain(widths, rows([when, banner.align(Align::Right).middle()])));
@@ -106,19 +108,28 @@ pub(super) fn found(flow: &mut Flow, found: &[Finding]) {
     let columns: Vec<[Cell; 3]> = found
         .iter()
         .map(|f| {
-            let evidence = if f.emphasised {
-                Para::new(&f.evidence.to_uppercase(), density.small_strong())
-            } else {
-                Para::new(&f.evidence, density.small())
-            };
             [
                 Cell::text(Role::HeaderCell, &f.label, density.small()),
                 Cell::text(Role::Cell, &f.value, Style::bold(15.0)),
-                Cell::new(Role::Cell, vec![Para::new(&f.range, density.small()), evidence]),
+                Cell::new(Role::Cell, vec![Para::new(&f.range, density.small()), evidence(f, density)]),
             ]
         })
         .collect();
     column_tables(flow, "Found, and where it should be", None, columns);
+}
+
+/// What a value rests on; doubtful evidence with its first word in bold capitals.
+fn evidence(finding: &Finding, density: Density) -> Para {
+    if !finding.emphasised {
+        return Para::new(&finding.evidence, density.small());
+    }
+    let text = printable(&finding.evidence);
+    let end = text.find([' ', ',']).unwrap_or(text.len());
+    let (word, rest) = text.split_at(end);
+    Para::of(vec![
+        Span { text: word.to_uppercase(), style: density.small_strong() },
+        Span { text: rest.to_owned(), style: density.small() },
+    ])
 }
 
 /// What to test afterwards, with room for the reading.
@@ -157,9 +168,9 @@ fn column_tables(flow: &mut Flow, heading: &str, labels: Option<[Cell; 3]>, colu
     let with_labels = |chunk: &[[Cell; 3]]| labels.iter().chain(chunk).cloned().collect::<Vec<_>>();
     let mut side_by_side = columns.len().min(5);
     while side_by_side > 1
-        && !columns.chunks(side_by_side).all(|chunk| {
-            fits(width, &with_labels(chunk).iter().map(need).collect::<Vec<_>>())
-        })
+        && !columns
+            .chunks(side_by_side)
+            .all(|chunk| fits(width, &with_labels(chunk).iter().map(need).collect::<Vec<_>>()))
     {
         side_by_side -= 1;
     }
@@ -235,10 +246,8 @@ pub(super) fn chemists_number(flow: &mut Flow, sheet: &DosingSheet) {
 
 fn target(target: &Target, density: Density) -> Para {
     let wall = joined(&[&target.ceiling, &bracketed(&target.wall)], " ");
-    let prediction = joined(
-        &[&prefixed("before ", &target.before), &prefixed("after ", &target.after)],
-        ", ",
-    );
+    let prediction =
+        joined(&[&prefixed("before ", &target.before), &prefixed("after ", &target.after)], ", ");
     let text = joined(&[&wall, &prediction], "; ");
     Para::of(vec![
         Span { text: format!("Ceiling, free {}: ", printable(&target.metal)), style: density.small_strong() },
@@ -293,15 +302,23 @@ pub(super) fn sign_off(flow: &mut Flow, labels: &[String]) {
     let side_by_side = labels.len().div_ceil(labels.len().div_ceil(6));
     let density = flow.density;
     for (index, chunk) in labels.chunks(side_by_side).enumerate() {
-        let header: Vec<Cell> = chunk.iter().map(|l| Cell::text(Role::HeaderCell, l, density.small())).collect();
+        let header: Vec<Cell> =
+            chunk.iter().map(|l| Cell::text(Role::HeaderCell, l, density.small())).collect();
         let boxes = chunk.iter().map(|_| Cell::write_in()).collect();
-        let needs: Vec<Need> = header.iter().map(padded_need).collect();
+        // Equal boxes, unless a label needs more.
+        let equal = flow.area.width() / chunk.len() as f32;
+        let equal_or_more =
+            |need: Need| Need { best: need.best.max(equal), least: need.best.min(equal * 1.5) };
+        let needs: Vec<Need> = header.iter().map(padded_need).map(equal_or_more).collect();
         let spec = TableSpec {
             grid: Grid::Full,
             header: vec![Row::new(header)],
             pad_x: PAD_X,
             pad_y: density.cell_pad * 0.7,
-            ..TableSpec::plain(share(flow.area.width(), &needs), vec![Row::new(boxes).at_least(density.write_in)])
+            ..TableSpec::plain(
+                share(flow.area.width(), &needs),
+                vec![Row::new(boxes).at_least(density.write_in)],
+            )
         };
         flow.gap(if index == 0 { density.section_gap } else { 3.0 });
         place(flow, &spec);

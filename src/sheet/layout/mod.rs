@@ -32,6 +32,8 @@ use super::model::DosingSheet;
 
 /// Leftover height from which a box for remarks is worth printing, points.
 const REMARKS_LEAST: f32 = 46.0;
+/// White space kept between the last box and the footer, points.
+const REMARKS_SPARE: f32 = 6.0;
 /// Height beyond which it would look like a page forgotten, points.
 const REMARKS_MOST: f32 = 190.0;
 
@@ -62,21 +64,36 @@ pub fn lay_out(sheet: &DosingSheet, paper: Paper) -> LaidOut {
 
 /// The operator's part, airy if it fits one page, denser if it must.
 fn operator_part(sheet: &DosingSheet, area: Area) -> Flow {
-    let one_page = style::densities().find_map(|density| {
-        let flow = place_operator_part(sheet, area, density, None, false);
-        (flow.pages.len() == 1).then_some((flow, false))
-    });
-    let (flow, stop_first) = one_page
-        .unwrap_or_else(|| (place_operator_part(sheet, area, style::NORMAL, None, true), true));
+    let one_page = airiest_on_one_page(sheet, area);
+    let stop_first = one_page.is_none();
+    let flow = one_page.unwrap_or_else(|| place_operator_part(sheet, area, style::NORMAL, None, stop_first));
     // What is left of the last page becomes a box for remarks, rather than a blank that looks forgotten.
     let gap = flow.density.section_gap;
-    let leftover = flow.room() - gap - 1.0;
+    let leftover = flow.room() - gap - REMARKS_SPARE;
     if leftover < REMARKS_LEAST {
         return flow;
     }
     let height = leftover.min(REMARKS_MOST);
     let with_remarks = place_operator_part(sheet, area, flow.density, Some(height), stop_first);
     if with_remarks.pages.len() == flow.pages.len() { with_remarks } else { flow }
+}
+
+/// The operator's part with as much white space as one page allows; `None` if even the densest needs more pages.
+fn airiest_on_one_page(sheet: &DosingSheet, area: Area) -> Option<Flow> {
+    let try_step = |step| {
+        let flow = place_operator_part(sheet, area, style::density(step), None, false);
+        (flow.pages.len() == 1).then_some(flow)
+    };
+    let mut best = try_step(style::DENSEST)?;
+    let (mut low, mut high) = (0, style::DENSEST);
+    while low < high {
+        let middle = low.midpoint(high);
+        match try_step(middle) {
+            Some(flow) => (best, high) = (flow, middle),
+            None => low = middle + 1,
+        }
+    }
+    Some(best)
 }
 
 fn place_operator_part(

@@ -39,10 +39,10 @@ impl Span {
 
 /// Units that belong to the number before them: never parted at a line end, emphasised together.
 const UNITS: &[&str] = &[
-    "L", "mL", "µL", "l", "ml", "kg", "g", "mg", "t", "lb", "oz", "gal", "qt", "m³", "°C", "°F", "K",
-    "%", "‰", "ppm", "ppb", "min", "minutes", "minute", "h", "hours", "hour", "s", "seconds", "cm",
-    "mm", "m", "in", "ft", "V", "mV", "A", "A/dm²", "mol", "mmol", "mol/L", "mmol/L", "M", "mM", "g/L",
-    "mg/L", "mL/L", "oz/gal", "g/mL", "bar", "rpm",
+    "L", "mL", "µL", "l", "ml", "kg", "g", "mg", "t", "lb", "oz", "gal", "qt", "m³", "°C", "°F", "K", "%",
+    "‰", "ppm", "ppb", "min", "minutes", "minute", "h", "hours", "hour", "s", "seconds", "cm", "mm", "m",
+    "in", "ft", "V", "mV", "A", "A/dm²", "mol", "mmol", "mol/L", "mmol/L", "M", "mM", "g/L", "mg/L", "mL/L",
+    "oz/gal", "g/mL", "bar", "rpm",
 ];
 
 /// The word without the punctuation around it.
@@ -59,10 +59,12 @@ pub(super) fn is_unit(word: &str) -> bool {
 pub(super) fn is_number(word: &str) -> bool {
     let digits = core(word).trim_start_matches(['-', '+', '−', '±', '<', '>', '≤', '≥', '≈', '~']);
     digits.starts_with(|c: char| c.is_ascii_digit())
-        && digits.chars().all(|c| c.is_ascii_digit() || matches!(c, '.' | ',' | ':' | '/' | '\u{a0}' | '×' | '–' | '%'))
+        && digits
+            .chars()
+            .all(|c| c.is_ascii_digit() || matches!(c, '.' | ',' | ':' | '/' | '\u{a0}' | '×' | '–' | '%'))
 }
 
-/// Whether the space between two words must not become a line end: `10.0 L`, `1 840`, `pH 9.4`, `gas ·`.
+/// Whether the space between two words must not become a line end: `10.0 L`, `1 840`, `pH 9.4`, `9.0 to 9.4`.
 pub(super) fn is_bound(before: &str, word: &str) -> bool {
     let ends_in_digit = before.ends_with(|c: char| c.is_ascii_digit());
     let group = core(word);
@@ -73,6 +75,8 @@ pub(super) fn is_bound(before: &str, word: &str) -> bool {
         || (core(before) == "pH" && is_number(word))
         || matches!(word, "·" | "=")
         || before == "="
+        || (word == "to" && (before == "up" || ends_in_digit))
+        || (before == "to" && is_number(word))
 }
 
 /// Splits operator text into words in `plain` and numbers with their units in `strong`.
@@ -134,8 +138,7 @@ mod tests {
     #[test]
     fn emphasis_changes_no_character_of_the_text() {
         let text = "up to 11.5 L, (2 × 5 L) · ≤ 40 °C";
-        let joined: String =
-            emphasise_numbers(text, PLAIN, STRONG).into_iter().map(|s| s.text).collect();
+        let joined: String = emphasise_numbers(text, PLAIN, STRONG).into_iter().map(|s| s.text).collect();
         assert_eq!(joined, text);
     }
 
@@ -144,7 +147,8 @@ mod tests {
         assert!(is_bound("10.0", "L"));
         assert!(is_bound("1", "840"));
         assert!(is_bound("pH", "9.45"));
-        assert!(!is_bound("9.0", "to"));
+        assert!(is_bound("9.0", "to") && is_bound("to", "9.4"));
+        assert!(!is_bound("add", "to") && !is_bound("to", "the"));
         assert!(!is_bound("jug,", "full"));
     }
 }

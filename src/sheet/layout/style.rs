@@ -94,33 +94,52 @@ impl Density {
 }
 
 /// As airy as it gets.
-const AIRY: Density =
-    Density { section_gap: 11.0, heading_gap: 4.0, cell_pad: 4.0, step_pad: 9.0, write_in: 32.0, leading: 1.24, small: 9.8 };
+const AIRY: Density = Density {
+    section_gap: 11.0,
+    heading_gap: 4.0,
+    cell_pad: 4.0,
+    step_pad: 9.0,
+    write_in: 32.0,
+    leading: 1.24,
+    small: 9.8,
+};
 /// As dense as it gets and still reads well.
-const DENSE: Density =
-    Density { section_gap: 3.8, heading_gap: 1.0, cell_pad: 1.4, step_pad: 1.7, write_in: 21.0, leading: 1.15, small: 9.0 };
+const DENSE: Density = Density {
+    section_gap: 3.8,
+    heading_gap: 1.0,
+    cell_pad: 1.4,
+    step_pad: 1.7,
+    write_in: 21.0,
+    leading: 1.15,
+    small: 9.0,
+};
 /// Used when one page is not enough anyway.
-pub(super) const NORMAL: Density =
-    Density { section_gap: 9.0, heading_gap: 3.0, cell_pad: 3.0, step_pad: 6.0, write_in: 28.0, leading: 1.22, small: 9.5 };
+pub(super) const NORMAL: Density = Density {
+    section_gap: 9.0,
+    heading_gap: 3.0,
+    cell_pad: 3.0,
+    step_pad: 6.0,
+    write_in: 28.0,
+    leading: 1.22,
+    small: 9.5,
+};
 
-/// Steps tried between airy and dense.
-const STEPS: u8 = 8;
+/// The densest step; step 0 is the airiest.
+pub(super) const DENSEST: u8 = 16;
 
-/// From airy to dense; the first that keeps the operator's part on one page is used.
-pub(super) fn densities() -> impl Iterator<Item = Density> {
-    (0..=STEPS).map(|step| {
-        let share = f32::from(step) / f32::from(STEPS);
-        let between = |airy: f32, dense: f32| airy + (dense - airy) * share;
-        Density {
-            section_gap: between(AIRY.section_gap, DENSE.section_gap),
-            heading_gap: between(AIRY.heading_gap, DENSE.heading_gap),
-            cell_pad: between(AIRY.cell_pad, DENSE.cell_pad),
-            step_pad: between(AIRY.step_pad, DENSE.step_pad),
-            write_in: between(AIRY.write_in, DENSE.write_in),
-            leading: between(AIRY.leading, DENSE.leading),
-            small: between(AIRY.small, DENSE.small),
-        }
-    })
+/// The density at a step from airy to dense.
+pub(super) fn density(step: u8) -> Density {
+    let share = f32::from(step.min(DENSEST)) / f32::from(DENSEST);
+    let between = |airy: f32, dense: f32| airy + (dense - airy) * share;
+    Density {
+        section_gap: between(AIRY.section_gap, DENSE.section_gap),
+        heading_gap: between(AIRY.heading_gap, DENSE.heading_gap),
+        cell_pad: between(AIRY.cell_pad, DENSE.cell_pad),
+        step_pad: between(AIRY.step_pad, DENSE.step_pad),
+        write_in: between(AIRY.write_in, DENSE.write_in),
+        leading: between(AIRY.leading, DENSE.leading),
+        small: between(AIRY.small, DENSE.small),
+    }
 }
 
 /// Height of capitals as a share of the font size, in the embedded fonts.

@@ -1,7 +1,7 @@
 //! Tables that break across pages. Every block of the sheet is one: a paragraph is a table of one cell.
 //!
 //! Rules: the header rows are repeated on each page; a row moves to the next page as a whole; only a row taller than a
-//! page is parted, between lines. A heading stays with the first row.
+//! page is parted, between lines. A heading stays with the first row; a short table is not broken at all.
 
 use super::cell::{Cell, LaidCell, Para};
 use super::flow::Flow;
@@ -89,6 +89,8 @@ impl TableSpec {
 
 /// A header taller than this share of a page is not repeated, or nothing else would fit.
 const REPEATED_HEADER_SHARE: f32 = 0.3;
+/// A table shorter than this share of a page is not broken: a value must not part from its range.
+const KEPT_WHOLE_SHARE: f32 = 0.25;
 /// Height kept free for the announcement at a page break, points.
 const ANNOUNCEMENT: f32 = 22.0;
 
@@ -143,8 +145,15 @@ impl<'a> Placer<'a> {
         };
         let mut header = lay(0, &spec.header);
         let mut rows = lay(header.len(), &spec.rows);
-        let mut placer =
-            Self { spec, heading, header: Vec::new(), rows: Vec::new(), block: 0, part_top: flow.y, first_on_page: true };
+        let mut placer = Self {
+            spec,
+            heading,
+            header: Vec::new(),
+            rows: Vec::new(),
+            block: 0,
+            part_top: flow.y,
+            first_on_page: true,
+        };
         if placer.height_of(&header) > REPEATED_HEADER_SHARE * flow.full_room() {
             header.append(&mut rows);
             (header, rows) = (Vec::new(), header);
@@ -171,10 +180,15 @@ impl<'a> Placer<'a> {
 
     fn begin(&mut self, flow: &mut Flow) {
         let heading = self.heading.as_ref().map_or(0.0, |h| h.height() + flow.density.heading_gap);
-        let first = self.rows.first().map_or(0.0, |row| self.height(row));
+        let all = self.height_of(&self.rows);
+        let short = all <= KEPT_WHOLE_SHARE * flow.full_room() && !self.spec.announce_steps;
+        let first = if short { all } else { self.rows.first().map_or(0.0, |row| self.height(row)) };
         let above = heading + self.height_of(&self.header) + self.spec.frame;
         let wanted = above + first + self.reserve(&self.rows, flow.room() - above);
-        if wanted > flow.room() && (wanted <= flow.full_room() || flow.room() < flow.full_room() / 3.0) && !flow.at_top() {
+        if wanted > flow.room()
+            && (wanted <= flow.full_room() || flow.room() < flow.full_room() / 3.0)
+            && !flow.at_top()
+        {
             flow.new_page();
         }
         if let Some(mut rest) = self.heading.take() {
@@ -316,7 +330,13 @@ impl<'a> Placer<'a> {
         let mut x = left;
         for (cell, width) in row.cells.iter().zip(&self.spec.widths) {
             if cell.is_heavy() {
-                flow.put(Item::Frame(Frame { x, y: top, width: *width, height: bottom - top, thickness: style::HEAVY }));
+                flow.put(Item::Frame(Frame {
+                    x,
+                    y: top,
+                    width: *width,
+                    height: bottom - top,
+                    thickness: style::HEAVY,
+                }));
             }
             x += width;
         }

@@ -82,11 +82,31 @@ fn an_ordinary_sheet_is_one_page_for_the_operator_and_one_for_the_file() {
 #[test]
 fn the_header_row_of_the_additions_is_repeated_on_each_page_they_reach() {
     let laid_out = lay_out(&sample::nine_additions(), Paper::A4);
-    let with = |page: &super::Page, text: &str| page.items.iter().any(|i| matches!(i, Item::Text(t) if t.text == text));
+    let with = |page: &super::Page, text: &str| {
+        page.items.iter().any(|i| matches!(i, Item::Text(t) if t.text == text))
+    };
     let pages_with_amounts: Vec<_> =
         laid_out.pages.iter().filter(|p| with(p, "10.0 L") || with(p, "95 mL")).collect();
     assert_eq!(pages_with_amounts.len(), 2);
     assert!(pages_with_amounts.iter().all(|p| with(p, "Measure out")));
+}
+
+#[test]
+fn a_long_table_for_the_file_repeats_its_header_row_and_keeps_every_row() {
+    let mut sheet = sample::four_additions();
+    let row =
+        |n: usize| vec![format!("reaction-{n}"), "1".into(), "2".into(), "3".into(), "4".into(), "5".into()];
+    sheet.file_copy.tables[3].rows = (0..150).map(row).collect();
+    let laid_out = lay_out(&sheet, Paper::Letter);
+    assert_inside(&laid_out);
+    let mut rows = 0;
+    for page in &laid_out.pages {
+        let has = |text: &str| page.items.iter().any(|i| matches!(i, Item::Text(t) if t.text == text));
+        let here = (0..150).filter(|n| has(&format!("reaction-{n}"))).count();
+        assert!(here == 0 || has("log K used"));
+        rows += here;
+    }
+    assert_eq!(rows, 150);
 }
 
 #[test]
@@ -132,7 +152,7 @@ fn every_page_says_which_page_it_is_and_what_computed_it() {
             .iter()
             .filter_map(|i| if let Item::Text(t) = i { Some(t) } else { None })
             .filter(|t| t.role == Role::Footer)
-            .map(|t| t.text.replace('\u{a0}', " "))
+            .map(|t| t.text.clone())
             .collect();
         assert!(foot.contains(&format!("page {} of {count}", index + 1)));
         assert!(foot.contains("Bathwright 0.1.0"));
@@ -147,4 +167,74 @@ fn newlines_controls_and_unknown_characters_never_reach_the_page() {
     let runs = sample::runs(&lay_out(&sheet, Paper::A4));
     assert!(runs.iter().all(|r| r.text.chars().all(|c| !c.is_control() && c != '\u{202e}')));
     assert!(runs.iter().any(|r| r.text.contains("??")));
+}
+
+mod random {
+    use proptest::prelude::*;
+
+    use super::*;
+    use crate::sheet::model::{Addition, Finding};
+
+    /// Text as careless as users are: long words, spaces, controls, other scripts.
+    fn any_text() -> impl Strategy<Value = String> {
+        prop_oneof![
+            "\\PC{0,60}",
+            "[a-z0-9 ,.()-]{0,400}",
+            "[A-Za-z0-9]{100,300}",
+            "[\\s\u{0}-\u{1f}\u{200b}\u{202e}a=+@-]{0,40}",
+        ]
+    }
+
+    proptest! {
+        #![proptest_config(ProptestConfig { cases: 24, failure_persistence: None, ..ProptestConfig::default() })]
+
+        #[test]
+        fn whatever_is_typed_stays_on_the_page(
+            text in proptest::collection::vec(any_text(), 12),
+            steps in 0_usize..6,
+            letter in any::<bool>(),
+        ) {
+            let mut sheet = sample::four_additions();
+            sheet.header.bath = text[0].clone();
+            sheet.header.tank = text[1].clone();
+            sheet.header.sheet_no = Some(text[2].clone());
+            sheet.header.prepared_by = Some(text[3].clone());
+            sheet.found.push(Finding { label: text[4].clone(), value: text[5].clone(), ..Finding::default() });
+            sheet.before_you_start.push(text[6].clone());
+            sheet.stop.push(text[7].clone());
+            sheet.additions = (0..steps)
+                .map(|n| Addition {
+                    material: text[n].clone(),
+                    amount: text[n + 1].clone(),
+                    measure: vec![text[n + 2].clone()],
+                    how: text[n + 3].clone(),
+                    then_ph: Some(text[n + 4].clone()),
+                    ..Addition::default()
+                })
+                .collect();
+            sheet.retest.columns[0].expect = text[8].clone();
+            sheet.sign_off[0] = text[9].clone();
+            sheet.file_copy.tables[0].rows[0][1] = text[10].clone();
+            sheet.file_copy.tables[1].columns[0].width = f32::NAN;
+            sheet.file_copy.flags.push(text[11].clone());
+            let laid_out = lay_out(&sheet, if letter { Paper::Letter } else { Paper::A4 });
+            assert_inside(&laid_out);
+            assert_no_overlap(&laid_out);
+            prop_assert!(crate::sheet::to_pdf(&laid_out).is_ok());
+            let as_text = crate::sheet::to_text(&laid_out);
+            prop_assert!(as_text.lines().all(|line| line.chars().count() <= 100));
+            prop_assert!(crate::sheet::to_csv(&sheet).is_ok());
+        }
+    }
+
+    #[test]
+    #[ignore = "prints a time"]
+    fn time_of_one_layout() {
+        let sheet = sample::four_additions();
+        let start = std::time::Instant::now();
+        for _ in 0..20 {
+            std::hint::black_box(lay_out(&sheet, Paper::A4));
+        }
+        println!("{:?} a layout", start.elapsed() / 20);
+    }
 }

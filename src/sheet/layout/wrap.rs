@@ -77,7 +77,8 @@ impl Word {
 /// Breaks spans into lines no wider than `width`. Empty text gives no line; every line holds at least one character.
 pub(in crate::sheet) fn wrap(spans: &[Span], width: f32, ruler: &impl Ruler) -> Vec<Line> {
     let words = words(spans, ruler);
-    let mut setter = Setter { width, ruler, lines: Vec::new(), current: Vec::new(), x: 0.0, join: Join::Start };
+    let mut setter =
+        Setter { width, ruler, lines: Vec::new(), current: Vec::new(), x: 0.0, join: Join::Start };
     let mut rest = words.as_slice();
     while let Some(first) = rest.first() {
         let length = 1 + rest[1..].iter().take_while(|w| w.bound).count();
@@ -114,7 +115,8 @@ fn words(spans: &[Span], ruler: &impl Ruler) -> Vec<Word> {
     for span in spans {
         for (index, part) in span.text.split(' ').enumerate() {
             if index > 0 {
-                let space = Fragment { text: " ".into(), style: span.style, width: ruler.width(" ", span.style) };
+                let space =
+                    Fragment { text: " ".into(), style: span.style, width: ruler.width(" ", span.style) };
                 if word.fragments.is_empty() {
                     // Leading or doubled space: keep only one, and none at the very start.
                     if !words.is_empty() {
@@ -226,9 +228,7 @@ impl<R: Ruler> Setter<'_, R> {
         }
         let punctuation = |c: char| matches!(c, '-' | '/' | ',' | ')' | ']' | '}' | '·' | '–' | '_' | ';');
         match text[..end].rfind(punctuation) {
-            Some(index) if index * 2 >= end => {
-                index + text[index..].chars().next().map_or(1, char::len_utf8)
-            }
+            Some(index) if index * 2 >= end => index + text[index..].chars().next().map_or(1, char::len_utf8),
             _ => end,
         }
     }

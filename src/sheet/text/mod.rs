@@ -12,7 +12,7 @@ use super::layout::wrap::{Ruler, wrap};
 use super::layout::{Item, Join, LaidOut, Page, Role, Span, Style, TextRun};
 
 /// Widest line, characters.
-pub const COLUMNS: usize = 100;
+pub(super) const COLUMNS: usize = 100;
 
 /// The sheet as plain text (UTF-8, lines ended by `\n`).
 pub fn to_text(sheet: &LaidOut) -> String {
@@ -130,7 +130,9 @@ fn write_paragraphs(block: &Block, out: &mut String) {
             }
             let longest = lines.iter().map(|l| l.chars().count()).max().unwrap_or(0);
             match cell.role {
-                Role::Title if block.number == 1 && out.lines().count() == 1 => push_line(out, &"=".repeat(longest)),
+                Role::Title if block.number == 1 && out.lines().count() == 1 => {
+                    push_line(out, &"=".repeat(longest))
+                }
                 Role::Heading if alone || cell.paragraphs.len() == 1 => push_line(out, &"-".repeat(longest)),
                 _ => {}
             }
@@ -161,7 +163,7 @@ pub(super) fn wrap_text(text: &str, columns: usize) -> Vec<String> {
 }
 
 pub(super) fn push_line(out: &mut String, line: &str) {
-    out.push_str(line.trim_end());
+    out.push_str(&line.trim_end().replace('\u{a0}', " "));
     out.push('\n');
 }
 

@@ -2,12 +2,16 @@
 
 use super::{COLUMNS, CellText, Cells, Characters, push_line, span, wrap_text};
 use crate::sheet::layout::Role;
-use crate::sheet::layout::wrap::least_width;
 use crate::sheet::layout::widths::{Need, fits, share};
+use crate::sheet::layout::wrap::least_width;
 use crate::sheet::model::Align;
 
 /// Between two columns, characters.
 const GAP: usize = 2;
+/// A word longer than this is broken rather than let it squeeze the other columns, characters.
+const LONGEST_WORD: f32 = 24.0;
+/// In a table that has to wrap, no column asks for more than this, characters.
+const WIDEST: f32 = 40.0;
 /// A field to write in, in a cell that is empty on paper.
 const WRITE_IN: &str = "________";
 
@@ -41,33 +45,41 @@ impl TextTable {
     pub(super) fn write(&self, cells: &Cells, out: &mut String) {
         let gaps = GAP * self.needs.len().saturating_sub(1);
         let room = COLUMNS.saturating_sub(gaps) as f32;
-        if self.needs.is_empty() || !fits(room, &self.needs) {
+        let Some(widths) = self.widths(room) else {
             return self.write_as_list(cells, out);
-        }
-        let widths = self.widths(room);
+        };
         let rows = rows(cells);
         let many_lines = rows.iter().any(|(_, row)| {
-            row.iter().zip(&widths).filter(|(cell, _)| cell.is_some_and(|c| c.role == Role::Cell)).any(|(cell, width)| {
-                cell.is_some_and(|c| lines(c, *width).len() > 1)
-            })
+            row.iter()
+                .zip(&widths)
+                .filter(|(cell, _)| cell.is_some_and(|c| c.role == Role::Cell))
+                .any(|(cell, width)| cell.is_some_and(|c| lines(c, *width).len() > 1))
         });
         let line = "-".repeat(widths.iter().sum::<usize>() + gaps);
         for (index, (is_header, row)) in rows.iter().enumerate() {
             write_row(row, &widths, out);
             let last = index + 1 == rows.len();
-            if (*is_header && !last) || (many_lines && !last) {
+            if (*is_header || many_lines) && !last {
                 push_line(out, &line);
             }
         }
     }
 
-    /// Whole characters; no column wider than it needs.
-    fn widths(&self, room: f32) -> Vec<usize> {
+    /// Widths in characters; `None` if the columns cannot stand side by side.
+    fn widths(&self, room: f32) -> Option<Vec<usize>> {
         let best: f32 = self.needs.iter().map(|n| n.best.max(1.0)).sum();
-        if best <= room {
-            return self.needs.iter().map(|n| n.best.max(1.0) as usize).collect();
+        if self.needs.is_empty() {
+            return None;
         }
-        share(room, &self.needs).into_iter().map(|w| (w as usize).max(1)).collect()
+        if best <= room {
+            return Some(self.needs.iter().map(|n| n.best.max(1.0) as usize).collect());
+        }
+        let tamed: Vec<Need> = self
+            .needs
+            .iter()
+            .map(|n| Need { least: n.least.min(LONGEST_WORD), best: n.best.min(WIDEST) })
+            .collect();
+        fits(room, &tamed).then(|| share(room, &tamed).into_iter().map(|w| (w as usize).max(1)).collect())
     }
 
     fn write_as_list(&self, cells: &Cells, out: &mut String) {

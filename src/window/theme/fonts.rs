@@ -28,11 +28,7 @@ fn definitions() -> FontDefinitions {
         let data = FontData::from_owned(with_line_box(bytes));
         fonts.font_data.insert(name.to_owned(), Arc::new(data));
     }
-    let fallback = fonts
-        .families
-        .get(&FontFamily::Proportional)
-        .cloned()
-        .unwrap_or_default();
+    let fallback = fonts.families.get(&FontFamily::Proportional).cloned().unwrap_or_default();
     let with_fallback = |name: &str| {
         let mut family = vec![name.to_owned()];
         family.extend(fallback.iter().cloned());
@@ -66,11 +62,7 @@ fn with_line_box(font: &[u8]) -> Vec<u8> {
 /// Where a table starts, by the directory at the head of a TrueType file.
 fn table_offset(font: &[u8], tag: &[u8; 4]) -> Option<usize> {
     let count = usize::from(u16::from_be_bytes(font.get(4..6)?.try_into().ok()?));
-    let record = font
-        .get(12..)?
-        .chunks_exact(16)
-        .take(count)
-        .find(|record| record.starts_with(tag))?;
+    let record = font.get(12..)?.chunks_exact(16).take(count).find(|record| record.starts_with(tag))?;
     let offset = u32::from_be_bytes(record.get(8..12)?.try_into().ok()?);
     usize::try_from(offset).ok()
 }
@@ -81,7 +73,8 @@ mod tests {
     use crate::window::theme::{Text, install};
 
     /// Every sign outside plain ASCII that the program writes itself.
-    const USED: &str = "⁰¹²³⁴⁵⁶⁷⁸⁹⁺⁻₀₁₂₃₄₅₆₇₈₉₊₋ₓ°℃℉µμ·±×÷ΣΔ√≤≥≈≠−–—…‰½“”‘’′←→↑↓↔⇌▲▼▶◀▸▾●○◆◇■□⬡☐☑✓✔✗✘⚠αβγσ£€§";
+    const USED: &str =
+        "⁰¹²³⁴⁵⁶⁷⁸⁹⁺⁻₀₁₂₃₄₅₆₇₈₉₊₋ₓ°℃℉µμ·±×÷ΣΔ√≤≥≈≠−–—…‰½“”‘’′←→↑↓↔⇌▲▼▶◀▸▾●○◆◇■□⬡☐☑✓✔✗✘⚠αβγσ£€§";
 
     fn installed() -> egui::Context {
         let ctx = egui::Context::default();
@@ -94,10 +87,7 @@ mod tests {
     #[test]
     fn our_own_fonts_hold_every_sign_that_is_written() {
         let ctx = installed();
-        for (family, name) in [
-            (FontFamily::Proportional, REGULAR),
-            (FontFamily::Name(BOLD.into()), BOLD),
-        ] {
+        for (family, name) in [(FontFamily::Proportional, REGULAR), (FontFamily::Name(BOLD.into()), BOLD)] {
             ctx.fonts_mut(|fonts| {
                 let known = fonts.characters(&family);
                 for sign in USED.chars().chain(' '..='~') {

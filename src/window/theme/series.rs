@@ -17,24 +17,15 @@ pub struct Series {
 }
 
 /// Lengths of dashes and of the gaps after them, in points; empty means solid.
-const PATTERNS: [(&[f32], &[f32]); SERIES_COUNT] = [
-    (&[], &[]),
-    (&[9.0], &[4.0]),
-    (&[2.5], &[3.0]),
-    (&[12.0, 2.5], &[3.0, 3.0]),
-    (&[6.0], &[3.0]),
-];
+const PATTERNS: [(&[f32], &[f32]); SERIES_COUNT] =
+    [(&[], &[]), (&[9.0], &[4.0]), (&[2.5], &[3.0]), (&[12.0, 2.5], &[3.0, 3.0]), (&[6.0], &[3.0])];
 
 impl Series {
     /// Style of curve number `index`, counted from 0.
     pub fn new(palette: &Palette, index: usize) -> Self {
         let slot = index % SERIES_COUNT;
         let (dashes, gaps) = PATTERNS[slot];
-        Self {
-            colour: palette.series[slot],
-            dashes,
-            gaps,
-        }
+        Self { colour: palette.series[slot], dashes, gaps }
     }
 
     /// True when the line has no dash.
@@ -90,9 +81,7 @@ mod tests {
     #[test]
     fn plot_styles_differ_as_well() {
         let palette = Palette::of(Theme::Dark);
-        let styles: Vec<_> = (0..SERIES_COUNT)
-            .map(|i| Series::new(palette, i).plot_line_style())
-            .collect();
+        let styles: Vec<_> = (0..SERIES_COUNT).map(|i| Series::new(palette, i).plot_line_style()).collect();
         for (i, style) in styles.iter().enumerate() {
             assert!(styles[..i].iter().all(|other| other != style), "series {i}");
         }

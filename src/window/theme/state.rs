@@ -23,13 +23,7 @@ pub enum State {
 
 impl State {
     /// All states, best first.
-    pub const ALL: [Self; 5] = [
-        Self::Held,
-        Self::Unsure,
-        Self::NotHeld,
-        Self::Infeasible,
-        Self::Unknown,
-    ];
+    pub const ALL: [Self; 5] = [Self::Held, Self::Unsure, Self::NotHeld, Self::Infeasible, Self::Unknown];
 
     /// The word that stands beside the mark.
     pub fn word(self) -> &'static str {
@@ -80,11 +74,7 @@ impl State {
             }
             Self::Unsure => {
                 let radius = half - outline.width / 2.0;
-                painter.add(Shape::convex_polygon(
-                    half_disc(centre, radius),
-                    colour,
-                    Stroke::NONE,
-                ));
+                painter.add(Shape::convex_polygon(half_disc(centre, radius), colour, Stroke::NONE));
                 painter.circle_stroke(centre, radius, outline);
             }
             Self::NotHeld => {
@@ -94,8 +84,9 @@ impl State {
                 painter.line_segment([at(-0.36, 0.36), at(0.36, -0.36)], stroke);
             }
             Self::Infeasible => {
-                let corners = [(-1.0, 0.0), (-0.5, -0.87), (0.5, -0.87), (1.0, 0.0), (0.5, 0.87), (-0.5, 0.87)]
-                    .map(|(x, y)| at(x * 0.95, y * 0.95));
+                let corners =
+                    [(-1.0, 0.0), (-0.5, -0.87), (0.5, -0.87), (1.0, 0.0), (0.5, 0.87), (-0.5, 0.87)]
+                        .map(|(x, y)| at(x * 0.95, y * 0.95));
                 painter.add(Shape::closed_line(corners.to_vec(), outline));
                 painter.line_segment([at(-0.42, 0.0), at(0.42, 0.0)], outline);
             }

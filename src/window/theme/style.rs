@@ -6,8 +6,8 @@ use std::collections::BTreeMap;
 use eframe::egui::epaint::Shadow;
 use eframe::egui::style::{Selection, WidgetVisuals, Widgets};
 use eframe::egui::{
-    Color32, Context, CornerRadius, FontFamily, FontId, Margin, Stroke, Style, TextStyle, Theme,
-    Visuals, vec2,
+    Color32, Context, CornerRadius, FontFamily, FontId, Margin, Stroke, Style, TextStyle, Theme, Visuals,
+    vec2,
 };
 
 use super::{Palette, Text};
@@ -49,10 +49,7 @@ fn apply(style: &mut Style, theme: Theme) {
 }
 
 fn text_styles() -> BTreeMap<TextStyle, FontId> {
-    let mut styles: BTreeMap<_, _> = Text::ALL
-        .into_iter()
-        .map(|role| (role.style(), role.font()))
-        .collect();
+    let mut styles: BTreeMap<_, _> = Text::ALL.into_iter().map(|role| (role.style(), role.font())).collect();
     styles.insert(TextStyle::Button, Text::Body.font());
     let monospace = FontId::new(Text::Body.size(), FontFamily::Monospace);
     styles.insert(TextStyle::Monospace, monospace);
@@ -65,10 +62,8 @@ fn visuals(theme: Theme) -> Visuals {
     let mut visuals = theme.default_visuals();
 
     visuals.widgets = widgets(palette, radius);
-    visuals.selection = Selection {
-        bg_fill: palette.accent_soft,
-        stroke: Stroke::new(HAIRLINE, palette.ink),
-    };
+    visuals.selection =
+        Selection { bg_fill: palette.accent_soft, stroke: Stroke::new(HAIRLINE, palette.ink) };
     visuals.text_cursor.stroke = Stroke::new(2.0, palette.accent);
     visuals.hyperlink_color = palette.accent;
     visuals.weak_text_color = Some(palette.ink2);
@@ -103,17 +98,9 @@ fn widgets(palette: &Palette, corner_radius: CornerRadius) -> Widgets {
     Widgets {
         noninteractive: look(palette.panel, line, palette.ink),
         inactive: look(palette.raised, line, palette.ink),
-        hovered: look(
-            palette.raised,
-            Stroke::new(HAIRLINE, palette.accent),
-            palette.ink,
-        ),
+        hovered: look(palette.raised, Stroke::new(HAIRLINE, palette.accent), palette.ink),
         // Also the look of whatever has the keyboard: the ring must be seen.
-        active: look(
-            palette.accent_soft,
-            Stroke::new(2.0, palette.accent),
-            palette.ink,
-        ),
+        active: look(palette.accent_soft, Stroke::new(2.0, palette.accent), palette.ink),
         open: look(palette.accent_soft, line, palette.ink),
     }
 }

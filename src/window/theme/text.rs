@@ -62,21 +62,13 @@ impl Text {
     fn is_strong(self) -> bool {
         matches!(
             self,
-            Self::AxisStrong
-                | Self::SmallStrong
-                | Self::Strong
-                | Self::Heading
-                | Self::VerdictStrong
+            Self::AxisStrong | Self::SmallStrong | Self::Strong | Self::Heading | Self::VerdictStrong
         )
     }
 
     /// Font for painting.
     pub fn font(self) -> FontId {
-        let family = if self.is_strong() {
-            BOLD_FAMILY.clone()
-        } else {
-            FontFamily::Proportional
-        };
+        let family = if self.is_strong() { BOLD_FAMILY.clone() } else { FontFamily::Proportional };
         FontId::new(self.size(), family)
     }
 

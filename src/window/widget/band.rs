@@ -37,13 +37,8 @@ pub(super) fn to_pixel(painter: &Painter, at: f32) -> f32 {
 /// The outline of something that is not there yet.
 pub(super) fn dotted_outline(painter: &Painter, rect: Rect, palette: &Palette) {
     let frame = rect.shrink(0.5);
-    let corners = [
-        frame.left_top(),
-        frame.right_top(),
-        frame.right_bottom(),
-        frame.left_bottom(),
-        frame.left_top(),
-    ];
+    let corners =
+        [frame.left_top(), frame.right_top(), frame.right_bottom(), frame.left_bottom(), frame.left_top()];
     let stroke = Stroke::new(HAIRLINE, palette.ink2);
     painter.extend(Shape::dashed_line(&corners, stroke, 2.0, 3.0));
 }

@@ -59,12 +59,12 @@ fn paint_mark(ui: &Ui, left_centre: egui::Pos2, size: f32, state: State) {
 #[cfg(test)]
 mod tests {
     use super::*;
-    use egui_kittest::{Harness, kittest::Queryable as _};
+    use crate::window::widget::lab;
+    use egui_kittest::kittest::Queryable as _;
 
     #[test]
     fn the_chip_reads_its_word_and_text() {
-        let mut harness = Harness::new_ui(|ui| {
-            crate::window::theme::install(ui.ctx());
+        let mut harness = lab([640.0, 400.0], (), |ui, ()| {
             chip(ui, State::Unsure, "126 % of the ceiling");
         });
         harness.run();

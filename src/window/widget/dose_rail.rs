@@ -4,17 +4,16 @@
 use eframe::egui;
 use std::fmt::Write as _;
 use std::ops::RangeInclusive;
-use std::sync::Arc;
 
 use eframe::egui::{
-    Align2, Color32, CursorIcon, FontId, Galley, Painter, Pos2, Rangef, Rect, Response, Role, Sense, Stroke,
-    Ui, WidgetInfo, pos2, vec2,
+    CursorIcon, Painter, Pos2, Rangef, Rect, Response, Sense, Stroke, Ui, WidgetInfo, pos2, vec2,
 };
 
+use super::band::to_pixel;
+use super::label_row::LabelRow;
 use super::numbers::padded;
 use super::slide::{Scale, Slide};
 use super::{Edit, fixed, paint_band};
-use super::band::to_pixel;
 use crate::window::theme::{HAIRLINE, Palette, State, Text, palette};
 
 const KNOB: f32 = 10.0;
@@ -50,15 +49,7 @@ pub struct DoseRail<'a> {
 impl<'a> DoseRail<'a> {
     /// A rail over `range` in `unit`. `label` names it to screen readers and must be unique in its `Ui`.
     pub fn new(label: &'a str, unit: &'a str, range: RangeInclusive<f64>) -> Self {
-        Self {
-            label,
-            unit,
-            range,
-            zones: &[],
-            cap: None,
-            step: 0.1,
-            scale: Scale::Linear,
-        }
+        Self { label, unit, range, zones: &[], cap: None, step: 0.1, scale: Scale::Linear }
     }
 
     /// Where each dose holds, in rising order. What no zone covers is drawn as not yet known.
@@ -93,7 +84,9 @@ impl<'a> DoseRail<'a> {
         let (_, rect) = ui.allocate_space(size);
         let hit = Rect::from_min_size(rect.min, vec2(rect.width(), RAIL_ROW));
         let id = ui.make_persistent_id(("dose rail", self.label));
-        let response = ui.interact(hit, id, Sense::click_and_drag()).on_hover_and_drag_cursor(CursorIcon::ResizeHorizontal);
+        let response = ui
+            .interact(hit, id, Sense::click_and_drag())
+            .on_hover_and_drag_cursor(CursorIcon::ResizeHorizontal);
         let rail = Rect::from_center_size(hit.center(), vec2(hit.width() - 2.0 * KNOB, RAIL));
 
         let pointed = pointed_value(ui, &response, rail, &slide, value);
@@ -215,34 +208,6 @@ fn stretch(zone: &Zone<'_>, slide: &Slide) -> String {
     format!("{} to {}", fixed(zone.from, places), fixed(zone.to, places))
 }
 
-/// A row of labels that never overlap: the first to come keeps its place.
-struct LabelRow<'p> {
-    painter: &'p Painter,
-    top: f32,
-    bounds: Rangef,
-    taken: Vec<Rangef>,
-}
-
-impl<'p> LabelRow<'p> {
-    fn new(painter: &'p Painter, top: f32, bounds: Rangef) -> Self {
-        Self { painter, top, bounds, taken: Vec::new() }
-    }
-
-    /// Puts text so that `anchor` (0 left, 1 right) of its width falls on `x`, shifted as little as the bounds ask for.
-    fn put(&mut self, x: f32, anchor: f32, text: String, font: FontId, colour: Color32) {
-        let galley: Arc<Galley> = self.painter.layout_no_wrap(text, font, colour);
-        let width = galley.size().x;
-        let most = (self.bounds.max - width).max(self.bounds.min);
-        let left = (x - anchor * width).clamp(self.bounds.min, most);
-        let place = Rangef::new(left, left + width);
-        if self.taken.iter().any(|other| place.expand(4.0).intersects(*other)) {
-            return;
-        }
-        self.taken.push(place);
-        self.painter.galley(pos2(left, self.top), galley, colour);
-    }
-}
-
 /// The dose under the pointer while the button is down. Whoever takes the knob by its edge does not move it by that.
 fn pointed_value(ui: &Ui, response: &Response, rail: Rect, slide: &Slide, value: f64) -> Option<f64> {
     let pointer: Pos2 = response.interact_pointer_pos()?;
@@ -276,4 +241,113 @@ fn paint_knob(painter: &Painter, centre: Pos2, response: &Response, palette: &Pa
     }
     painter.circle(centre, KNOB - 1.5, fill, Stroke::new(2.5, palette.accent));
     painter.vline(centre.x, centre.y - 4.0..=centre.y + 4.0, Stroke::new(2.0, palette.accent));
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::window::widget::lab;
+    use eframe::egui::{Key, Modifiers};
+    use egui_kittest::Harness;
+    use egui_kittest::kittest::{NodeT as _, Queryable as _};
+
+    #[derive(Default)]
+    struct Seen {
+        dose: f64,
+        changes: usize,
+        done: usize,
+    }
+
+    fn harness<'a>() -> Harness<'a, Seen> {
+        let start = Seen { dose: 16.0, ..Seen::default() };
+        lab([420.0, 120.0], start, |ui, seen: &mut Seen| {
+            let zone = |from, to, state, words| Zone { from, to, state, words };
+            let zones = [
+                zone(0.0, 13.9, State::Unsure, "unsure: ceiling"),
+                zone(13.9, 31.2, State::Held, ""),
+                zone(31.2, 40.0, State::Unsure, "unsure: floor"),
+            ];
+            let rail = DoseRail::new("HEDP", "g/L", 0.0..=40.0).zones(&zones);
+            let edit = rail.cap(Some(21.5)).show(ui, seen.dose);
+            seen.changes += usize::from(edit.value.is_some());
+            seen.done += usize::from(edit.done);
+            seen.dose = edit.value.unwrap_or(seen.dose);
+        })
+    }
+
+    #[test]
+    fn arrows_step_finely_and_with_shift_coarsely() {
+        let mut harness = harness();
+        harness.get_by_label("HEDP").focus();
+        harness.run();
+        harness.key_press(Key::ArrowRight);
+        harness.run();
+        assert_eq!(harness.state().dose, 16.1);
+        harness.key_press_modifiers(Modifiers::SHIFT, Key::ArrowLeft);
+        harness.run();
+        assert_eq!(harness.state().dose, 15.1);
+        harness.key_press(Key::PageUp);
+        harness.run();
+        assert_eq!(harness.state().dose, 16.1);
+        assert_eq!(harness.state().done, 3);
+    }
+
+    #[test]
+    fn home_and_end_go_to_the_ends_and_no_further() {
+        let mut harness = harness();
+        harness.get_by_label("HEDP").focus();
+        harness.run();
+        harness.key_press(Key::End);
+        harness.run();
+        harness.key_press(Key::ArrowRight);
+        harness.run();
+        assert_eq!(harness.state().dose, 40.0);
+        harness.key_press(Key::Home);
+        harness.run();
+        assert_eq!(harness.state().dose, 0.0);
+    }
+
+    #[test]
+    fn a_drag_moves_the_dose_many_times_and_ends_once() {
+        let mut harness = harness();
+        harness.run();
+        let rail = harness.get_by_label("HEDP").rect();
+        let x_of = |dose: f32| rail.left() + KNOB + dose / 40.0 * (rail.width() - 2.0 * KNOB);
+        let at = |dose| pos2(x_of(dose), rail.center().y);
+        harness.drag_at(at(16.0));
+        harness.step();
+        assert_eq!(harness.state().changes, 0, "taking the knob is no change");
+        for dose in [20.0, 25.0, 30.0] {
+            harness.hover_at(at(dose));
+            harness.step();
+        }
+        assert!((harness.state().dose - 30.0).abs() < 0.15, "{}", harness.state().dose);
+        assert_eq!(harness.state().done, 0);
+        harness.drop_at(at(30.0));
+        harness.run();
+        assert_eq!(harness.state().done, 1);
+    }
+
+    #[test]
+    fn a_click_on_the_rail_brings_the_knob_there() {
+        let mut harness = harness();
+        harness.run();
+        // The middle of the rail.
+        harness.get_by_label("HEDP").click();
+        harness.run();
+        assert!((harness.state().dose - 20.0).abs() < 0.15);
+        assert_eq!(harness.state().done, 1);
+    }
+
+    #[test]
+    fn a_screen_reader_hears_value_state_cap_and_zones() {
+        let mut harness = harness();
+        harness.run();
+        let value = harness.get_by_label("HEDP").accesskit_node().value().unwrap_or_default();
+        for part in
+            ["16.0 g/L, held", "under the cap of 21.5", "held 13.9 to 31.2", "unsure: floor 31.2 to 40"]
+        {
+            assert!(value.contains(part), "{part} in {value}");
+        }
+    }
 }

@@ -73,13 +73,12 @@ pub fn evidence(ui: &mut Ui, rests_on: Evidence, detail: &str) -> Response {
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::window::theme;
-    use egui_kittest::{Harness, kittest::Queryable as _};
+    use crate::window::widget::lab;
+    use egui_kittest::kittest::Queryable as _;
 
     #[test]
     fn evidence_reads_as_word_and_detail() {
-        let mut harness = Harness::new_ui(|ui| {
-            theme::install(ui.ctx());
+        let mut harness = lab([640.0, 400.0], (), |ui, ()| {
             evidence(ui, Evidence::Today, "07:30");
             evidence(ui, Evidence::Inferred, ", assay 12 d");
             evidence(ui, Evidence::Assumed, "");

@@ -20,8 +20,13 @@ pub fn follow_field(ui: &mut Ui, label: &str, value: &str, unit: &str, width: f3
         let painter = ui.painter();
         let field = egui::Rect::from_min_size(rect.min, vec2(width, rect.height()));
         let frame = field.shrink(0.5);
-        let corners =
-            [frame.left_top(), frame.right_top(), frame.right_bottom(), frame.left_bottom(), frame.left_top()];
+        let corners = [
+            frame.left_top(),
+            frame.right_top(),
+            frame.right_bottom(),
+            frame.left_bottom(),
+            frame.left_top(),
+        ];
         painter.extend(Shape::dashed_line(&corners, Stroke::new(HAIRLINE, palette.ink2), 3.0, 3.0));
         let at = pos2(field.right() - 6.0, field.center().y);
         painter.text(at, Align2::RIGHT_CENTER, value, Text::Value.font(), palette.ink);

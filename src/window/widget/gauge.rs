@@ -1,7 +1,6 @@
 //! The free-metal gauge. Up is more free metal, so the pM axis runs downwards: a ceiling is a hatched plate above, a
 //! floor one below, the bar is the operating range, the whiskers its confidence, the arrows the set point.
 
-use eframe::egui;
 use std::fmt::Write as _;
 use std::ops::RangeInclusive;
 
@@ -165,8 +164,8 @@ pub fn gauge_legend(ui: &mut Ui, confidence_percent: u32) {
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::window::theme;
-    use egui_kittest::{Harness, kittest::Queryable as _};
+    use crate::window::widget::lab;
+    use egui_kittest::kittest::{NodeT as _, Queryable as _};
 
     fn copper() -> Gauge<'static> {
         Gauge {
@@ -184,12 +183,11 @@ mod tests {
     }
 
     fn label_of(gauge: Gauge<'static>) -> String {
-        let mut harness = Harness::new_ui(move |ui| {
-            theme::install(ui.ctx());
+        let mut harness = lab([640.0, 400.0], (), move |ui, ()| {
             gauge.show(ui);
         });
         harness.run();
-        let node = harness.get_by_role(egui::accesskit::Role::Meter);
+        let node = harness.get_by_role(Role::Meter);
         node.accesskit_node().label().unwrap_or_default()
     }
 
@@ -203,12 +201,7 @@ mod tests {
 
     #[test]
     fn without_a_limit_the_gauge_is_an_empty_well() {
-        let label = label_of(Gauge {
-            ceiling: None,
-            floor: None,
-            empty_text: "No ceiling yet.",
-            ..copper()
-        });
+        let label = label_of(Gauge { ceiling: None, floor: None, empty_text: "No ceiling yet.", ..copper() });
         assert_eq!(label, "Copper, pCu: No ceiling yet.");
     }
 

@@ -44,9 +44,8 @@ impl GaugeAxis {
 
 /// Everything the gauge has to show, with room for a plate behind each limit, out to round numbers.
 fn fitted(gauge: &Gauge<'_>) -> RangeInclusive<f64> {
-    let (mut low, mut high) = gauge
-        .numbers()
-        .fold((f64::INFINITY, f64::NEG_INFINITY), |(low, high), n| (low.min(n), high.max(n)));
+    let (mut low, mut high) =
+        gauge.numbers().fold((f64::INFINITY, f64::NEG_INFINITY), |(low, high), n| (low.min(n), high.max(n)));
     if low > high {
         return 0.0..=LEAST_SPAN;
     }

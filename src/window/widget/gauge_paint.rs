@@ -3,13 +3,14 @@
 use std::sync::Arc;
 
 use eframe::egui::{
-    Align2, Color32, Galley, Painter, Pos2, Rangef, Rect, Response, Sense, Shape, Stroke, StrokeKind, Ui, pos2, vec2,
+    Align2, Color32, Galley, Painter, Pos2, Rangef, Rect, Response, Sense, Shape, Stroke, StrokeKind, Ui,
+    pos2, vec2,
 };
 
 use super::band::dotted_outline;
+use super::band::to_pixel;
 use super::gauge_axis::GaugeAxis;
 use super::{Gauge, Lean, fixed, hatch, paint_band};
-use super::band::to_pixel;
 use crate::window::theme::{HAIRLINE, Palette, State, Text, palette};
 
 const WELL: f32 = 52.0;
@@ -31,7 +32,9 @@ pub(super) struct Frame {
 impl Frame {
     pub(super) fn new(ui: &Ui, gauge: &Gauge<'_>) -> Self {
         let palette = palette(ui);
-        let text = |text: &str, role: Text, colour| ui.painter().layout_no_wrap(text.to_owned(), role.font(), colour);
+        let text = |text: &str, role: Text, colour| {
+            ui.painter().layout_no_wrap(text.to_owned(), role.font(), colour)
+        };
         let title = text(gauge.title, Text::Heading, palette.ink);
         let subtitle = text(gauge.subtitle, Text::Axis, palette.ink2);
         let word = text(gauge.shown_word(), Text::Strong, palette.ink);
@@ -137,7 +140,15 @@ fn paint_reading(painter: &Painter, well: Rect, axis: &GaugeAxis, gauge: &Gauge<
     }
 }
 
-fn paint_whisker(painter: &Painter, x: f32, from: f32, to: f32, capped: bool, colour: Color32, palette: &Palette) {
+fn paint_whisker(
+    painter: &Painter,
+    x: f32,
+    from: f32,
+    to: f32,
+    capped: bool,
+    colour: Color32,
+    palette: &Palette,
+) {
     let cap = Rangef::new(x - WHISKER / 2.0, x + WHISKER / 2.0);
     // The ground line lifts the whisker off a plate it reaches into.
     painter.vline(x, from..=to, Stroke::new(5.0, palette.raised));

@@ -29,9 +29,8 @@ fn lines(rect: Rect, lean: Lean, spacing: f32) -> impl Iterator<Item = [egui::Po
     };
     let start = (first / pitch).ceil() * pitch;
     let empty = !rect.is_positive() || !rect.is_finite();
-    std::iter::successors(Some(start), move |c| Some(c + pitch))
-        .take_while(move |c| !empty && *c < last)
-        .map(move |c| match lean {
+    std::iter::successors(Some(start), move |c| Some(c + pitch)).take_while(move |c| !empty && *c < last).map(
+        move |c| match lean {
             Lean::Rising => {
                 let left = rect.left().max(c - rect.bottom());
                 let right = rect.right().min(c - rect.top());
@@ -42,7 +41,8 @@ fn lines(rect: Rect, lean: Lean, spacing: f32) -> impl Iterator<Item = [egui::Po
                 let right = rect.right().min(rect.bottom() - c);
                 [pos2(left, c + left), pos2(right, c + right)]
             }
-        })
+        },
+    )
 }
 
 #[cfg(test)]
@@ -74,9 +74,7 @@ mod tests {
     fn the_pattern_stands_still_when_the_rectangle_grows() {
         let small = Rect::from_min_size(pos2(0.0, 0.0), vec2(20.0, 20.0));
         let large = Rect::from_min_size(pos2(0.0, 0.0), vec2(60.0, 20.0));
-        let offsets = |rect| -> Vec<f32> {
-            lines(rect, Lean::Rising, 5.0).map(|[a, _]| a.x + a.y).collect()
-        };
+        let offsets = |rect| -> Vec<f32> { lines(rect, Lean::Rising, 5.0).map(|[a, _]| a.x + a.y).collect() };
         let (few, many) = (offsets(small), offsets(large));
         assert!(few.iter().zip(&many).all(|(a, b)| (a - b).abs() < 1e-3));
     }

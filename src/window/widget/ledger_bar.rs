@@ -2,11 +2,11 @@
 //! their name; those too narrow for a name have it under the bar, and the narrowest leave it to the table.
 
 use eframe::egui::{
-    Align2, Color32, Painter, Rangef, Rect, Response, Role, Sense, Stroke, Ui, WidgetInfo, pos2, vec2,
+    Color32, Painter, Rangef, Rect, Response, Role, Sense, Stroke, Ui, WidgetInfo, pos2, vec2,
 };
 
-use super::{Lean, fixed, hatch};
 use super::band::to_pixel;
+use super::{Lean, fixed, hatch};
 use crate::window::theme::{Palette, Text, palette};
 
 const BAR: f32 = 26.0;
@@ -64,18 +64,12 @@ fn colour_of(palette: &Palette, series: usize) -> Color32 {
 }
 
 fn percent(part: f64) -> String {
-    if part > 0.0 && part < 0.01 {
-        "under 1 %".to_owned()
-    } else {
-        format!("{} %", fixed(part * 100.0, 0))
-    }
+    if part > 0.0 && part < 0.01 { "under 1 %".to_owned() } else { format!("{} %", fixed(part * 100.0, 0)) }
 }
 
 fn spoken(name: &str, shares: &[Share<'_>]) -> String {
-    let parts: Vec<String> = shares
-        .iter()
-        .map(|share| format!("{} {}", share.label, percent(share.part)))
-        .collect();
+    let parts: Vec<String> =
+        shares.iter().map(|share| format!("{} {}", share.label, percent(share.part))).collect();
     format!("{name}: {}", parts.join(", "))
 }
 
@@ -153,13 +147,12 @@ fn paint_name(
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::window::theme;
-    use egui_kittest::{Harness, kittest::Queryable as _};
+    use crate::window::widget::lab;
+    use egui_kittest::kittest::Queryable as _;
 
     #[test]
     fn the_bar_reads_every_share_even_those_too_narrow_to_draw() {
-        let mut harness = Harness::new_ui(|ui| {
-            theme::install(ui.ctx());
+        let mut harness = lab([640.0, 400.0], (), |ui, ()| {
             let share = |label, part, series| Share { label, part, series, fill: Fill::Solid };
             let shares = [share("copper", 0.499, 0), share("acid", 0.431, 3), share("iron", 0.004, 1)];
             ledger_bar(ui, "Who holds the HEDP", &shares);

@@ -15,6 +15,7 @@ mod gauge;
 mod gauge_axis;
 mod gauge_paint;
 mod hatch;
+mod label_row;
 mod ledger_bar;
 mod number_field;
 mod numbers;
@@ -50,4 +51,17 @@ pub struct Edit<T> {
     /// True when a gesture ended here: the drag was released, the key was pressed, the text was entered. This is the
     /// place for an undo step; between press and release there are many values and no step.
     pub done: bool,
+}
+
+/// A window of the given size with the program's fonts and themes, showing `app`.
+#[cfg(test)]
+fn lab<'a, State: 'a>(
+    size: [f32; 2],
+    state: State,
+    app: impl FnMut(&mut eframe::egui::Ui, &mut State) + 'a,
+) -> egui_kittest::Harness<'a, State> {
+    egui_kittest::Harness::builder()
+        .with_size(size)
+        .with_context_setup(crate::window::theme::install)
+        .build_ui_state(app, state)
 }

@@ -8,11 +8,7 @@ const THIN_SPACE: char = '\u{2009}';
 /// Prints with at most `decimals` places; zeros at the end are dropped.
 pub fn fixed(value: f64, decimals: usize) -> String {
     let text = format!("{value:.decimals$}");
-    let text = if text.contains('.') {
-        text.trim_end_matches('0').trim_end_matches('.')
-    } else {
-        &text
-    };
+    let text = if text.contains('.') { text.trim_end_matches('0').trim_end_matches('.') } else { &text };
     dress(text)
 }
 
@@ -98,11 +94,7 @@ pub fn parse_number(text: &str) -> Result<f64, NotANumber> {
         return Err(unreadable());
     }
     let value: f64 = with_decimal_point(&plain, typed)?.parse().map_err(|_| unreadable())?;
-    if value.is_finite() {
-        Ok(value)
-    } else {
-        Err(NotANumber::TooLarge(shortened(typed)))
-    }
+    if value.is_finite() { Ok(value) } else { Err(NotANumber::TooLarge(shortened(typed))) }
 }
 
 /// The text with its decimal comma turned into a point and its grouping marks taken out.
@@ -125,11 +117,7 @@ fn with_decimal_point(plain: &str, typed: &str) -> Result<String, NotANumber> {
                 && (1..=3).contains(&whole.len())
                 && !whole.starts_with('0')
                 && after.chars().all(|c| c.is_ascii_digit());
-            if looks_like_thousands {
-                Err(ambiguous())
-            } else {
-                Ok(format!("{before}.{after}"))
-            }
+            if looks_like_thousands { Err(ambiguous()) } else { Ok(format!("{before}.{after}")) }
         }
     }
 }
@@ -171,20 +159,14 @@ mod tests {
         assert_eq!(parse_number("abc"), Err(NotANumber::Unreadable("abc".into())));
         assert_eq!(parse_number("1e999"), Err(NotANumber::TooLarge("1e999".into())));
         for text in ["inf", "NaN", "--2", "1.2.3", "4 g", "e", "1e", ","] {
-            assert!(
-                matches!(parse_number(text), Err(NotANumber::Unreadable(_))),
-                "{text}"
-            );
+            assert!(matches!(parse_number(text), Err(NotANumber::Unreadable(_))), "{text}");
         }
     }
 
     #[test]
     fn a_comma_that_can_mean_two_things_is_asked_about() {
         for text in ["1,840", "12,500", "1,200,000", "-1,840"] {
-            assert!(
-                matches!(parse_number(text), Err(NotANumber::Ambiguous(_))),
-                "{text}"
-            );
+            assert!(matches!(parse_number(text), Err(NotANumber::Ambiguous(_))), "{text}");
         }
     }
 

@@ -5,7 +5,8 @@ use eframe::egui;
 use std::ops::RangeInclusive;
 
 use eframe::egui::{
-    CursorIcon, Id, Painter, Pos2, Rect, Response, Sense, Shape, Stroke, StrokeKind, Ui, WidgetInfo, pos2, vec2,
+    CursorIcon, Id, Painter, Pos2, Rect, Response, Sense, Shape, Stroke, StrokeKind, Ui, WidgetInfo, pos2,
+    vec2,
 };
 
 use super::numbers::padded;
@@ -103,7 +104,9 @@ impl<'a> RangeBar<'a> {
         let (_, rect) = ui.allocate_space(vec2(ui.available_width().max(80.0), ROW));
         let id = ui.make_persistent_id(("range bar", self.label));
         let hit = rect.expand2(vec2(0.0, (MIN_HIT - ROW).max(0.0) / 2.0));
-        let response = ui.interact(hit, id, Sense::click_and_drag()).on_hover_and_drag_cursor(CursorIcon::ResizeHorizontal);
+        let response = ui
+            .interact(hit, id, Sense::click_and_drag())
+            .on_hover_and_drag_cursor(CursorIcon::ResizeHorizontal);
         let track = rect.shrink2(vec2(DIAMOND, 0.0));
         let x_of = |value: f64| egui::lerp(track.x_range(), slide.place(value));
 
@@ -186,11 +189,8 @@ fn grabbed(ui: &Ui, response: &Response, id: Id, x_of: impl Fn(Part) -> f32) -> 
 /// Between ends that lie on one another, the side of the pointer decides.
 fn nearest(pointer: f32, [low, set, high]: [f32; 3]) -> Part {
     let set_gap = (pointer - set).abs() - SET_LEAD;
-    let (end, end_gap) = if pointer < set {
-        (Part::Low, (pointer - low).abs())
-    } else {
-        (Part::High, (pointer - high).abs())
-    };
+    let (end, end_gap) =
+        if pointer < set { (Part::Low, (pointer - low).abs()) } else { (Part::High, (pointer - high).abs()) };
     if end_gap < set_gap { end } else { Part::Set }
 }
 
@@ -217,6 +217,79 @@ fn paint(ui: &Ui, response: &Response, handles: &[Response; 3], track: Rect, [lo
 }
 
 fn paint_diamond(painter: &Painter, centre: Pos2, palette: &Palette) {
-    let corners = [vec2(0.0, -1.0), vec2(1.0, 0.0), vec2(0.0, 1.0), vec2(-1.0, 0.0)].map(|v| centre + v * DIAMOND);
-    painter.add(Shape::convex_polygon(corners.to_vec(), palette.accent, Stroke::new(HAIRLINE, palette.panel)));
+    let corners =
+        [vec2(0.0, -1.0), vec2(1.0, 0.0), vec2(0.0, 1.0), vec2(-1.0, 0.0)].map(|v| centre + v * DIAMOND);
+    painter.add(Shape::convex_polygon(
+        corners.to_vec(),
+        palette.accent,
+        Stroke::new(HAIRLINE, palette.panel),
+    ));
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::window::widget::lab;
+    use eframe::egui::{Key, Modifiers};
+    use egui_kittest::{Harness, kittest::Queryable as _};
+
+    const START: Span = Span { low: 9.2, set: 9.5, high: 9.8 };
+
+    fn harness<'a>() -> Harness<'a, (Span, usize)> {
+        lab([300.0, 60.0], (START, 0), |ui, (span, done): &mut (Span, usize)| {
+            ui.add_space(12.0);
+            let edit = RangeBar::new("pH", "", 7.0..=12.0).step(0.05).show(ui, *span);
+            *span = edit.value.unwrap_or(*span);
+            *done += usize::from(edit.done);
+        })
+    }
+
+    #[test]
+    fn each_part_moves_by_keyboard_and_stops_at_its_neighbour() {
+        let mut harness = harness();
+        harness.get_by_label("pH, low end").focus();
+        harness.run();
+        harness.key_press(Key::ArrowLeft);
+        harness.run();
+        assert_eq!(harness.state().0.low, 9.15);
+        harness.key_press(Key::End);
+        harness.run();
+        assert_eq!(harness.state().0.low, START.set);
+        harness.get_by_label("pH, set point").focus();
+        harness.run();
+        harness.key_press_modifiers(Modifiers::SHIFT, Key::ArrowRight);
+        harness.run();
+        assert_eq!(harness.state().0.set, START.high);
+    }
+
+    #[test]
+    fn dragging_the_high_end_leaves_the_set_point_alone() {
+        let mut harness = harness();
+        harness.run();
+        let end = harness.get_by_label("pH, high end").rect().center();
+        harness.drag_at(end);
+        harness.step();
+        harness.hover_at(end + vec2(40.0, 0.0));
+        harness.step();
+        harness.drop_at(end + vec2(40.0, 0.0));
+        harness.run();
+        let (span, done) = *harness.state();
+        assert!(span.high > 10.2, "{span:?}");
+        assert_eq!((span.low, span.set, done), (START.low, START.set, 1));
+    }
+
+    #[test]
+    fn between_ends_that_coincide_the_side_of_the_pointer_decides() {
+        assert_eq!(nearest(110.0, [100.0; 3]), Part::Set);
+        assert_eq!(nearest(90.0, [80.0, 100.0, 120.0]), Part::Set);
+        assert_eq!(nearest(84.0, [80.0, 100.0, 120.0]), Part::Low);
+        assert_eq!(nearest(119.0, [80.0, 100.0, 120.0]), Part::High);
+    }
+
+    #[test]
+    fn the_bar_as_a_whole_reads_its_range() {
+        let mut harness = harness();
+        harness.run();
+        harness.get_by_label_contains("pH: 9.2 to 9.8");
+    }
 }

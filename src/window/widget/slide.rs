@@ -92,17 +92,15 @@ impl Slide {
 
     /// What keys and screen readers make of `value`; `None` when they leave it alone.
     pub(super) fn nudged(&self, ui: &Ui, response: &Response, value: f64) -> Option<f64> {
-        if response.has_focus() {
-            let arrows = EventFilter {
-                horizontal_arrows: true,
-                vertical_arrows: true,
-                ..EventFilter::default()
-            };
+        let focused = response.has_focus();
+        if focused {
+            let arrows =
+                EventFilter { horizontal_arrows: true, vertical_arrows: true, ..EventFilter::default() };
             ui.memory_mut(|memory| memory.set_focus_lock_filter(response.id, arrows));
         }
         let moved = ui.input(|input| {
             let mut moved = value;
-            if response.has_focus() {
+            if focused {
                 for event in &input.events {
                     moved = self.after_event(event, moved);
                 }
@@ -168,10 +166,7 @@ mod tests {
 
     #[test]
     fn places_and_values_are_inverse_on_both_scales() {
-        for slide in [
-            Slide::new(0.0, 40.0, 0.1, Scale::Linear),
-            Slide::new(0.01, 100.0, 0.0, Scale::Log),
-        ] {
+        for slide in [Slide::new(0.0, 40.0, 0.1, Scale::Linear), Slide::new(0.01, 100.0, 0.0, Scale::Log)] {
             for part in [0.0, 0.25, 0.5, 0.9, 1.0] {
                 let back = f64::from(slide.place(slide.value_at(part)));
                 assert!((back - part).abs() < 2e-3, "{slide:?} {part} {back}");

@@ -52,13 +52,12 @@ pub fn verdict_panel(ui: &mut Ui, state: State, sentence: &str, second: &str) ->
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::window::theme;
-    use egui_kittest::{Harness, kittest::Queryable as _};
+    use crate::window::widget::lab;
+    use egui_kittest::kittest::Queryable as _;
 
     #[test]
     fn the_verdict_is_read_as_one_sentence() {
-        let mut harness = Harness::new_ui(|ui| {
-            theme::install(ui.ctx());
+        let mut harness = lab([640.0, 400.0], (), |ui, ()| {
             verdict_panel(ui, State::NotHeld, "At pH 9.2 free copper is 1.6 × the ceiling.", "");
         });
         harness.run();

@@ -1,0 +1,19 @@
+//! The dose: whether it holds over the operating range, how surely, and the smallest one that does.
+//!
+//! This floor asks the bath for equilibria and knows neither sheets nor windows.
+
+mod adjust;
+mod assess;
+mod ledger;
+mod measure;
+mod reason;
+mod search;
+mod verdict;
+
+pub use adjust::{Adjustment, adjustment, ph_after};
+pub use assess::{Assessment, Assessor, CONFIDENCE_95, MetalReading, Reading, WallReading};
+pub use ledger::{Holder, LedgerEntry, ledger};
+pub use measure::{Direction, Measured, ROUNDING_FLAG, measure};
+pub use reason::{Change, Reason, why_none};
+pub use search::{Band, Found, Hold, Search, search};
+pub use verdict::{State, Verdict, verdict};
