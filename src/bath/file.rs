@@ -139,7 +139,14 @@ pub fn save(project: &Project, path: &Path) -> Result<(), FileError> {
 }
 
 /// Writes a file so that either the old or the new one is there, whole.
-pub(crate) fn replace(path: &Path, bytes: &[u8], keep_previous: bool) -> std::io::Result<()> {
+///
+/// # Errors
+/// The system's reason; the old file is untouched then.
+pub fn replace_file(path: &Path, bytes: &[u8]) -> std::io::Result<()> {
+    replace(path, bytes, false)
+}
+
+fn replace(path: &Path, bytes: &[u8], keep_previous: bool) -> std::io::Result<()> {
     let target = if path.exists() { path.canonicalize()? } else { path.to_path_buf() };
     let folder = target.parent().filter(|folder| !folder.as_os_str().is_empty()).unwrap_or(Path::new("."));
     let mut file = tempfile::NamedTempFile::new_in(folder)?;

@@ -13,7 +13,7 @@ mod recipe;
 mod resolve;
 
 pub use error::BathError;
-pub use file::{FileError, load, read, save, write};
+pub use file::{FileError, load, read, replace_file, save, write};
 pub use flags::{Flag, flags};
 pub use history::History;
 pub use operating::{Ph, Range};

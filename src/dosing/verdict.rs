@@ -95,7 +95,7 @@ pub fn verdict(bath: &Bath, assessment: &Assessment, search: Option<&Search>) ->
 }
 
 /// A share of a limit: "69 %" below it, "1.6 ×" above.
-pub(crate) fn share(excess: f64) -> String {
+pub fn share(excess: f64) -> String {
     let ratio = 10f64.powf(excess);
     if ratio <= 1.3 {
         percent(ratio)
@@ -111,7 +111,7 @@ fn super_digits(n: i64) -> String {
 }
 
 /// A wall in words: "the copper ceiling".
-pub(crate) fn wall_name(bath: &Bath, wall: Wall) -> String {
+pub fn wall_name(bath: &Bath, wall: Wall) -> String {
     match wall {
         Wall::Ceiling(i) => format!("the {} ceiling", bath.component(bath.limits[i].component).name),
         Wall::Floor(i) => format!("the {} floor", bath.component(bath.limits[i].component).name),

@@ -3,11 +3,13 @@
 //! Why this shape: an operator acts on paper, so what is on screen, in the PDF and in the text file must be the same
 //! words and numbers. [`lay_out`] is the only place that decides where something stands; the writers only walk it.
 //!
-//! What this module must not know: chemistry, files, the window. Every string in a [`DosingSheet`] arrives formatted;
-//! this module places it, wraps it and never drops any of it.
+//! [`content`] turns a planned dose into the data, wording and rounding every number once. What the layout and the
+//! writers must not know: chemistry, files, the window. They place what they are given and never drop any of it.
 
+mod content;
 mod csv;
 mod error;
+mod evidence;
 mod fonts;
 mod layout;
 mod model;
@@ -16,6 +18,7 @@ mod pdf;
 mod sample;
 mod text;
 
+pub use content::content;
 pub use csv::to_csv;
 pub use error::SheetError;
 pub use fonts::{BOLD_TTF, REGULAR_TTF, printable};

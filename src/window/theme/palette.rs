@@ -193,6 +193,7 @@ mod tests {
     fn text_on_filled_colours_is_readable() {
         for theme in THEMES {
             let p = Palette::of(theme);
+            assert_readable(&format!("{theme:?} selected"), p.accent, p.accent_soft);
             for ground in p.series.into_iter().chain([p.accent]) {
                 assert_readable(&format!("{theme:?} on_accent"), p.on_accent, ground);
             }

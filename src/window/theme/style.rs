@@ -62,8 +62,9 @@ fn visuals(theme: Theme) -> Visuals {
     let mut visuals = theme.default_visuals();
 
     visuals.widgets = widgets(palette, radius);
-    visuals.selection =
-        Selection { bg_fill: palette.accent_soft, stroke: Stroke::new(HAIRLINE, palette.ink) };
+    // The stroke is also the frame of a text field that has the keyboard, hence its width.
+    let frame = Stroke::new(2.0 * HAIRLINE, palette.accent);
+    visuals.selection = Selection { bg_fill: palette.accent_soft, stroke: frame };
     visuals.text_cursor.stroke = Stroke::new(2.0, palette.accent);
     visuals.hyperlink_color = palette.accent;
     visuals.weak_text_color = Some(palette.ink2);

@@ -12,7 +12,7 @@ pub fn paint_band(painter: &Painter, rect: Rect, state: State, palette: &Palette
     let colour = state.colour(palette);
     let hatched = |lean, spacing, width| {
         painter.rect_filled(rect, 0.0, state.soft(palette));
-        hatch(painter, rect, lean, spacing, Stroke::new(width, colour));
+        hatch(painter, rect.shrink(HAIRLINE), lean, spacing, Stroke::new(width, colour));
         painter.rect_stroke(rect, 0.0, Stroke::new(HAIRLINE, colour), StrokeKind::Inside);
     };
     match state {

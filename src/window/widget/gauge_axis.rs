@@ -9,7 +9,7 @@ use super::ticks::nice_step;
 use super::{Gauge, Ticks, ticks};
 
 /// Ticks on a gauge, at most.
-const MOST_TICKS: usize = 5;
+const MOST_TICKS: usize = 6;
 /// The least an axis shows: closer, and the last digit of a constant would look like a hill.
 const LEAST_SPAN: f64 = 1.0;
 

@@ -99,7 +99,7 @@ fn paint_limits(painter: &Painter, well: Rect, axis: &GaugeAxis, gauge: &Gauge<'
             Lean::Rising => Rangef::new(well.top(), y),
             Lean::Falling => Rangef::new(y, well.bottom()),
         };
-        hatch(painter, Rect::from_x_y_ranges(well.x_range(), plate), lean, 4.0, thin);
+        hatch(painter, Rect::from_x_y_ranges(well.x_range(), plate).shrink(0.5), lean, 4.0, thin);
         painter.hline(sides, y, edge);
     }
 }
@@ -116,7 +116,7 @@ fn paint_reading(painter: &Painter, well: Rect, axis: &GaugeAxis, gauge: &Gauge<
         }
     }
     // A ground of its own, so that a plate behind it does not mix with the hatch of the bar.
-    painter.rect_filled(bar.expand(1.0), 0.0, palette.raised);
+    painter.rect_filled(bar.expand2(vec2(1.0, 0.0)), 0.0, palette.raised);
     paint_band(painter, bar, gauge.state, palette);
     for (pm, y, sign) in [(gauge.worst, bar.top(), -1.0), (gauge.least, bar.bottom(), 1.0)] {
         if !axis.shows(pm) {
@@ -131,12 +131,21 @@ fn paint_reading(painter: &Painter, well: Rect, axis: &GaugeAxis, gauge: &Gauge<
         let corners = vec![tip, tip + vec2(back, -5.5), tip + vec2(back, 5.5)];
         painter.add(Shape::convex_polygon(corners, palette.accent, Stroke::NONE));
     }
-    let ends = [pos2(bar.left(), y), pos2(bar.right(), y)];
-    let halo = Stroke::new(2.0 * HAIRLINE, palette.raised);
+    paint_set_line(painter, [pos2(bar.left(), y), pos2(bar.right(), y)], gauge, palette);
+}
+
+/// The set point across the bar: light on the solid bar, dark on a light band where the bar is hatched or empty.
+fn paint_set_line(painter: &Painter, ends: [Pos2; 2], gauge: &Gauge<'_>, palette: &Palette) {
+    let mut colour = palette.raised;
+    if gauge.state != State::Held {
+        painter.line_segment(ends, Stroke::new(6.0, palette.raised));
+        colour = gauge.state.colour(palette);
+    }
+    let stroke = Stroke::new(2.0, colour);
     if gauge.stale {
-        painter.extend(Shape::dashed_line(&ends, halo, 3.0, 3.0));
+        painter.extend(Shape::dashed_line(&ends, stroke, 3.0, 3.0));
     } else {
-        painter.line_segment(ends, halo);
+        painter.line_segment(ends, stroke);
     }
 }
 

@@ -6,6 +6,8 @@ use eframe::egui::{Color32, FontId, Galley, Painter, Rangef, pos2};
 
 /// Room between two labels.
 const APART: f32 = 8.0;
+/// How far a label may be from its place and still be read as belonging there.
+const FURTHEST: f32 = 56.0;
 
 /// One row, while it is being filled.
 pub(super) struct LabelRow<'p> {
@@ -25,12 +27,23 @@ impl<'p> LabelRow<'p> {
         let galley: Arc<Galley> = self.painter.layout_no_wrap(text, font, colour);
         let width = galley.size().x;
         let most = (self.bounds.max - width).max(self.bounds.min);
-        let left = (x - anchor * width).clamp(self.bounds.min, most);
+        let wanted = (x - anchor * width).clamp(self.bounds.min, most);
+        let Some(left) = self.free_place(wanted, width, most) else { return };
         let place = Rangef::new(left, left + width);
-        if self.taken.iter().any(|other| place.expand(APART).intersects(*other)) {
-            return;
-        }
         self.taken.push(place);
         self.painter.galley(pos2(left, self.top), galley, colour);
+    }
+
+    /// The wanted place, or the nearest free one beside a label in the way, if that is not far.
+    fn free_place(&self, wanted: f32, width: f32, most: f32) -> Option<f32> {
+        let beside = self.taken.iter().flat_map(|other| [other.min - APART - width, other.max + APART]);
+        std::iter::once(wanted)
+            .chain(beside)
+            .filter(|left| (self.bounds.min..=most).contains(left) && (left - wanted).abs() <= FURTHEST)
+            .filter(|left| {
+                let place = Rangef::new(left - APART + 0.5, left + width + APART - 0.5);
+                self.taken.iter().all(|other| !place.intersects(*other))
+            })
+            .min_by(|a, b| (a - wanted).abs().total_cmp(&(b - wanted).abs()))
     }
 }

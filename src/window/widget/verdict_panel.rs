@@ -19,7 +19,9 @@ pub fn verdict_panel(ui: &mut Ui, state: State, sentence: &str, second: &str) ->
     job.wrap.max_width = text_width;
     job.append(state.word(), 0.0, format(Text::VerdictStrong));
     job.append(". ", 0.0, format(Text::VerdictStrong));
-    job.append(sentence, 0.0, format(Text::Verdict));
+    // A percent sign must not start a line.
+    let unbroken = sentence.replace(" %", "\u{a0}%");
+    job.append(&unbroken, 0.0, format(Text::Verdict));
     let main = ui.painter().layout_job(job);
     let small = ui.painter().layout(second.to_owned(), Text::Small.font(), palette.ink, text_width);
     let small_height = if second.is_empty() { 0.0 } else { small.size().y + 6.0 };
