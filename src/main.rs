@@ -1,21 +1,47 @@
 //! The program: a window, or one of the commands without one.
 
-use bathwright::command::{Arguments, BAD_INPUT, run};
+use bathwright::bath::{DEMOS, Project, load};
+use bathwright::command::{Arguments, BAD_INPUT, report, run};
+use bathwright::window;
 use clap::Parser as _;
+use std::path::{Path, PathBuf};
 use std::process::ExitCode;
 
 fn main() -> ExitCode {
+    env_logger::init();
     let arguments = Arguments::parse();
-    let mut out = std::io::stdout().lock();
     let result = match &arguments.command {
-        Some(command) => run(command, &mut out),
-        None => return ExitCode::SUCCESS,
+        Some(command) => run(command, &mut std::io::stdout().lock()),
+        None => match open(arguments.file.as_deref()) {
+            Ok((project, path, shown)) => match window::open(project.clone(), path) {
+                Ok(()) => return ExitCode::SUCCESS,
+                Err(error) => {
+                    eprintln!("bathwright: {error}; printing the report instead");
+                    report(&project, &shown, &mut std::io::stdout().lock())
+                }
+            },
+            Err(error) => {
+                eprintln!("bathwright: {error}");
+                return ExitCode::from(BAD_INPUT);
+            }
+        },
     };
     match result {
         Ok(outcome) => ExitCode::from(outcome.code()),
         Err(error) => {
             eprintln!("bathwright: {error}");
             ExitCode::from(BAD_INPUT)
+        }
+    }
+}
+
+/// The named project, or the first demo bath; with the name to show.
+fn open(file: Option<&Path>) -> Result<(Project, Option<PathBuf>, String), bathwright::bath::FileError> {
+    match file {
+        Some(path) => Ok((load(path)?, Some(path.to_path_buf()), path.display().to_string())),
+        None => {
+            let demo = &DEMOS[0];
+            Ok((demo.project()?, None, format!("demo_baths/{}", demo.file)))
         }
     }
 }

@@ -3,6 +3,7 @@
 //!
 //! This floor may read and write files; it knows no dose search, no sheet and no window.
 
+mod demo;
 mod error;
 mod file;
 mod flags;
@@ -12,6 +13,7 @@ mod project;
 mod recipe;
 mod resolve;
 
+pub use demo::{DEMOS, Demo};
 pub use error::BathError;
 pub use file::{FileError, load, read, replace_file, save, write};
 pub use flags::{Flag, flags};

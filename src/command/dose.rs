@@ -5,7 +5,7 @@ use super::table::Table;
 use super::{CommandError, Outcome, choose_agent, print};
 use crate::bath::{Bath, Wall};
 use crate::dosing::{
-    Assessment, Change, Hold, Plan, Reason, Search, Verdict, plan, search, verdict, why_none,
+    Assessment, Change, Hold, Plan, Reason, Search, Verdict, plan, search, share_of_limit, verdict, why_none,
 };
 use crate::quantity::{fixed, p_value, percent, significant};
 use serde_json::{Value, json};
@@ -225,8 +225,8 @@ pub fn limits_table(bath: &Bath, before: &Assessment, after: &Assessment) -> Str
             limit.map_or("–".to_owned(), p_value),
             p_value(old.worst.value),
             p_value(new.worst.value),
-            percent(10f64.powf(new.excess)),
-            percent(10f64.powf(new.excess_95)),
+            share_of_limit(new.excess),
+            share_of_limit(new.excess_95),
             format!("pH {}, {} °C", fixed(new.worst.ph, 2), fixed(new.worst.temperature_c, 0)),
         ]);
     }
@@ -269,7 +269,7 @@ fn reason_text(bath: &Bath, agent: usize, reason: &Reason) -> String {
     let mut text = format!(
         "\nNo dose of {name} holds. The best, {} g/L, reaches {} of the nearest limit.\n",
         significant(reason.best_dose_g_l, 3),
-        crate::dosing::share_of_limit(reason.best.excess()),
+        share_of_limit(reason.best.excess()),
     );
     let holders: Vec<String> = reason
         .ledger

@@ -1,0 +1,60 @@
+//! The window: draws what the chain Project → Bath → System → Equilibrium answers, and edits the project.
+//!
+//! It computes no chemistry. A worker answers each version of the project; the last good picture stays until the new
+//! one is there. `logic` receives answers and runs commands, `ui` only draws.
+
+mod answer;
+mod app;
+mod bath_page;
+mod command;
+mod diagram;
+mod dialogs;
+mod document;
+mod doses;
+mod frame;
+mod ledger;
+mod sheet_page;
+mod tank;
+pub mod theme;
+pub mod widget;
+mod worker;
+
+pub use app::App;
+
+use crate::bath::Project;
+use std::path::PathBuf;
+use thiserror::Error;
+
+/// Why no window could open.
+#[derive(Debug, Error)]
+#[error("no window can open here ({reason})")]
+pub struct WindowError {
+    reason: String,
+}
+
+/// Smallest window in points: the page still works at 1280 × 800 on a screen of 200 %.
+const SMALLEST: [f32; 2] = [720.0, 450.0];
+const FIRST_SIZE: [f32; 2] = [1440.0, 900.0];
+
+/// Opens the window on a project and returns when it is closed.
+///
+/// # Errors
+/// [`WindowError`] when there is no display or no working renderer.
+pub fn open(project: Project, path: Option<PathBuf>) -> Result<(), WindowError> {
+    let viewport = eframe::egui::ViewportBuilder::default()
+        .with_title("Bathwright")
+        .with_app_id("bathwright")
+        .with_inner_size(FIRST_SIZE)
+        .with_min_inner_size(SMALLEST);
+    let options = eframe::NativeOptions { viewport, ..eframe::NativeOptions::default() };
+    let start = Box::new(move |context: &eframe::CreationContext<'_>| {
+        Ok(Box::new(App::new(&context.egui_ctx, project, path)) as Box<dyn eframe::App>)
+    });
+    eframe::run_native("bathwright", options, start)
+        .map_err(|error| WindowError { reason: one_line(&error.to_string()) })
+}
+
+/// The reason without line breaks.
+fn one_line(text: &str) -> String {
+    text.split_whitespace().collect::<Vec<_>>().join(" ")
+}
