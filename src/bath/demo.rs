@@ -19,7 +19,14 @@ macro_rules! demos {
 }
 
 /// All demo baths; the program opens on the first.
-pub const DEMOS: &[Demo] = demos!["copper_strike.ron"];
+pub const DEMOS: &[Demo] = demos![
+    "copper_strike.ron",
+    "electroless_copper.ron",
+    "electroless_nickel.ron",
+    "hard_water_cleaner.ron",
+    "pyrophosphate_copper.ron",
+    "derusting.ron",
+];
 
 impl Demo {
     /// The bath.

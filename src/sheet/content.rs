@@ -10,7 +10,7 @@ use crate::quantity::{fixed, grouped, p_value, plain, significant};
 use sha2::{Digest as _, Sha256};
 
 /// Largest pH that a spread around an expected value is printed with.
-const PH_TOLERANCE: f64 = 0.15;
+const PH_TOLERANCE: f64 = 0.1;
 /// Amount of a portion, kg, that is added in ten minutes; a tenth of it in five.
 const SLOW_ADDITION_KG: f64 = 5.0;
 
@@ -185,7 +185,7 @@ fn targets(bath: &Bath, plan: &Plan) -> Vec<Target> {
                 format!("{share} of the {kind} (p{} {})", component.short(), p_value(value))
             };
             Some(Target {
-                metal: format!("free {}", component.name),
+                metal: component.name.clone(),
                 ceiling: format!(
                     "{kind} {} mol/L (p{} {})",
                     significant(level, 2),

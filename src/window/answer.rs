@@ -3,8 +3,7 @@
 use crate::bath::{Bath, BathError, Flag, Point, Project, flags};
 use crate::chemistry::ComponentKind;
 use crate::dosing::{
-    Adjustment, Assessment, Assessor, LedgerEntry, Plan, Search, Verdict, adjustment, ledger, plan, search,
-    verdict,
+    Adjustment, Assessment, Assessor, LedgerEntry, Search, Verdict, adjustment, ledger, plan, search, verdict,
 };
 use crate::equilibrium::{Equilibrium, Solver};
 use crate::sheet::{LaidOut, Paper, content, lay_out};
@@ -68,8 +67,6 @@ pub struct Thorough {
     pub generation: u64,
     /// One search for each agent; empty without limits.
     pub searches: Vec<Search>,
-    /// The additions for the doses as they stand.
-    pub plan: Plan,
     /// One sentence on the doses.
     pub verdict: Verdict,
     /// The sheet, laid out.
@@ -151,7 +148,7 @@ pub fn thorough(request: &Request) -> Result<Thorough, BathError> {
     let sheet = content(&bath, &plan, &verdict, Some(now))?;
     let sheet_csv = crate::sheet::to_csv(&sheet).unwrap_or_default();
     let sheet = lay_out(&sheet, Paper::A4);
-    Ok(Thorough { generation: request.generation, searches, plan, verdict, sheet, sheet_csv })
+    Ok(Thorough { generation: request.generation, searches, verdict, sheet, sheet_csv })
 }
 
 fn axis(bath: &Bath, across: Across) -> Axis {

@@ -101,6 +101,17 @@ impl App {
         &self.document.project
     }
 
+    /// Changes the project as one edit.
+    pub fn edit(&mut self, change: impl FnOnce(&mut Project), name: &str) {
+        change(&mut self.document.project);
+        self.document.settle(name);
+    }
+
+    /// The state of the doses as last computed.
+    pub fn verdict_state(&self) -> Option<crate::dosing::State> {
+        self.thorough.as_ref().map(|thorough| thorough.verdict.state)
+    }
+
     /// Whether every picture answers the project as it stands.
     pub fn is_current(&self) -> bool {
         self.answered == self.generation

@@ -10,11 +10,17 @@ use crate::bath::ResolvedLimit;
 use crate::chemistry::{ComponentKind, pretty};
 use crate::quantity::{percent, plain};
 use crate::study::{Axis, Diagram};
-use eframe::egui::{Align, Align2, Color32, ComboBox, Id, Layout, Pos2, Rect, Stroke, Ui, pos2, vec2};
-use egui_plot::{AxisHints, HoverPosition, Line, Plot, PlotPoint, PlotPoints, PlotTransform, VLine};
+use eframe::egui::{
+    Align, Align2, Color32, ComboBox, Id, Layout, Pos2, Rangef, Rect, Stroke, Ui, pos2, vec2,
+};
+use egui_plot::{
+    AxisHints, GridInput, GridMark, HoverPosition, Line, Plot, PlotPoint, PlotPoints, PlotTransform, VLine,
+};
 
 /// Share of the height that the free-metal strip takes.
 const STRIP: f32 = 0.36;
+/// Width of the numbers and the name beside both plots, so that they share one left edge.
+const AXIS_WIDTH: f32 = 58.0;
 /// Smallest peak whose name stands at its line.
 const NAMED_PEAK: f64 = 0.05;
 
@@ -98,7 +104,7 @@ fn axis_name(quick: &Quick) -> String {
 }
 
 /// A plot that can be read but not lost: no zoom, no drag.
-fn plot<'a>(id: &'a str, link: Id, diagram: &Diagram, height: f32) -> Plot<'a> {
+fn plot<'a>(id: &'a str, link: Id, diagram: &Diagram, height: f32, grid_colour: Color32) -> Plot<'a> {
     let (from, to) = ends(diagram);
     Plot::new(id)
         .height(height)
@@ -111,7 +117,24 @@ fn plot<'a>(id: &'a str, link: Id, diagram: &Diagram, height: f32) -> Plot<'a> {
         .set_margin_fraction(vec2(0.0, 0.0))
         .default_x_bounds(from, to)
         .link_cursor(link, [true, false])
-        .y_axis_min_width(44.0)
+        .grid_fade(0.0)
+        .grid_color(grid_colour)
+        .x_grid_spacer(|input| grid(input, 8.0))
+}
+
+/// Grid lines at round numbers, about `count` of them.
+fn grid(input: GridInput, count: f64) -> Vec<GridMark> {
+    let (low, high) = input.bounds;
+    let rough = (high - low) / count;
+    if !(rough.is_finite() && rough > 0.0) {
+        return Vec::new();
+    }
+    let decade = 10f64.powf(rough.log10().floor());
+    let step =
+        [1.0, 2.0, 2.5, 5.0, 10.0].map(|m| m * decade).into_iter().find(|s| *s >= rough).unwrap_or(rough);
+    let first = (low / step).ceil() as i64;
+    let last = (high / step).floor() as i64;
+    (first..=last).map(|i| GridMark { value: i as f64 * step, step_size: step }).collect()
 }
 
 /// Stretches of a line without gaps.
@@ -132,12 +155,19 @@ fn shares(app: &App, quick: &Quick, ui: &mut Ui, height: f32, link: Id) {
     let p = palette(ui);
     let diagram = &quick.diagram;
     let (from, to) = ends(diagram);
-    let axes = vec![AxisHints::new_y().label("share, %").formatter(|mark, _| format!("{:.0}", mark.value))];
+    let axes = vec![
+        AxisHints::new_y()
+            .min_thickness(AXIS_WIDTH)
+            .label_spacing(Rangef::new(14.0, 22.0))
+            .label("share, %")
+            .formatter(|mark, _| format!("{:.0}", mark.value)),
+    ];
     let tell = |position: &HoverPosition<'_>| hover(diagram, quick, position);
     let (range, set) = marks(quick);
     let stale = !app.picture_is_current();
-    let shown = plot("shares", link, diagram, height)
+    let shown = plot("shares", link, diagram, height, p.grid)
         .custom_y_axes(axes)
+        .y_grid_spacer(|input| grid(input, 5.0))
         .show_axes([false, true])
         .include_y(0.0)
         .include_y(100.0)
@@ -148,7 +178,7 @@ fn shares(app: &App, quick: &Quick, ui: &mut Ui, height: f32, link: Id) {
             plot.set_plot_bounds_y(0.0..=104.0);
             if let Some((low, high)) = range {
                 plot.span(
-                    egui_plot::Span::new("operating range", low..=high)
+                    egui_plot::Span::new("", low..=high)
                         .fill(p.accent_soft.gamma_multiply(0.55))
                         .border_width(0.0),
                 );
@@ -288,20 +318,27 @@ fn strip(quick: &Quick, ui: &mut Ui, height: f32, link: Id) {
     let room = 0.12 * (high - low).max(0.8);
     let (low, high) = (low - room, high + room);
     let label = format!("free {}, p{}", component.name, component.short());
-    let y = vec![AxisHints::new_y().label(label).formatter(|mark, _| plain(-mark.value, 1))];
-    let x = vec![AxisHints::new_x().label(axis_name(quick))];
+    let y = vec![
+        AxisHints::new_y()
+            .min_thickness(AXIS_WIDTH)
+            .label_spacing(Rangef::new(14.0, 22.0))
+            .label(label)
+            .formatter(|mark, _| plain(-mark.value, 1)),
+    ];
+    let x = vec![AxisHints::new_x().label_spacing(Rangef::new(14.0, 22.0)).label(axis_name(quick))];
     let tell = |position: &HoverPosition<'_>| hover(diagram, quick, position);
     let (range, set) = marks(quick);
-    let shown = plot("free metal", link, diagram, height)
+    let shown = plot("free metal", link, diagram, height, p.grid)
         .custom_y_axes(y)
         .custom_x_axes(x)
+        .y_grid_spacer(|input| grid(input, 4.0))
         .label_formatter(tell)
         .show(ui, |plot| {
             plot.set_plot_bounds_x(from..=to);
             plot.set_plot_bounds_y(low..=high);
             if let Some((low, high)) = range {
                 plot.span(
-                    egui_plot::Span::new("operating range", low..=high)
+                    egui_plot::Span::new("", low..=high)
                         .fill(p.accent_soft.gamma_multiply(0.55))
                         .border_width(0.0),
                 );
@@ -330,6 +367,17 @@ fn strip(quick: &Quick, ui: &mut Ui, height: f32, link: Id) {
     );
 }
 
+/// The wall up to its first stop, short enough to stand beside the ceiling; the tank panel has the whole of it.
+fn first_clause(wall: &str) -> String {
+    const MOST: usize = 44;
+    let clause = wall.split(['.', ';', ':', ',']).next().unwrap_or(wall).trim();
+    if clause.chars().count() <= MOST {
+        return clause.to_lowercase();
+    }
+    let cut: String = clause.chars().take(MOST).collect();
+    format!("{}…", cut.to_lowercase().trim_end())
+}
+
 /// Ceiling and floor as hatched plates with their names.
 fn plates(
     ui: &Ui,
@@ -354,7 +402,7 @@ fn plates(
         let y = y_of(level);
         hatch(&painter, Rect::from_min_max(frame.min, pos2(frame.right(), y)), Lean::Rising, 7.0, stroke);
         painter.hline(frame.x_range(), y, edge);
-        let of = if wall.is_empty() { String::new() } else { format!(", {wall}") };
+        let of = if wall.is_empty() { String::new() } else { format!(", {}", first_clause(wall)) };
         name(
             format!("ceiling p{symbol} {}{of}", plain(-level, 1)),
             pos2(frame.right() - 6.0, y - 4.0),

@@ -121,7 +121,7 @@ fn agent_row(app: &mut App, ui: &mut Ui, agent: usize) -> bool {
     if let Some(product) = product {
         let project = &app.document.project;
         let volume = project.tank.volume_l;
-        if volume > 0.0 {
+        if volume > 0.0 && app.document.project.agents[agent].dose_g_l > 0.0 {
             let measured = measure(
                 &product,
                 app.document.project.agents[agent].dose_g_l,

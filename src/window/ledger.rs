@@ -8,9 +8,9 @@ use crate::quantity::{percent, significant};
 use eframe::egui::{Frame, Grid, Margin, Ui};
 
 /// Rows of the table at most.
-const ROWS: usize = 5;
+const ROWS: usize = 4;
 const HEAD: f32 = 96.0;
-const ROW: f32 = 20.0;
+const ROW: f32 = 27.0;
 
 /// Height that the card takes, points.
 pub fn height(app: &App) -> f32 {

@@ -20,6 +20,8 @@ pub mod widget;
 mod worker;
 
 pub use app::App;
+pub use command::Command;
+pub use dialogs::{Ask, Purpose};
 
 use crate::bath::Project;
 use std::path::PathBuf;

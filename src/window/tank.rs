@@ -239,7 +239,6 @@ fn content(content: &mut Content, naming: &Naming, ui: &mut Ui, done: &mut Optio
     let mut remove = false;
     ui.separator();
     ui.horizontal(|ui| {
-        ui.add(eframe::egui::Label::new(&naming.name).truncate());
         ui.with_layout(Layout::right_to_left(Align::Center), |ui| {
             if ui.small_button("×").on_hover_text("Remove this constituent").clicked() {
                 remove = true;
@@ -248,6 +247,10 @@ fn content(content: &mut Content, naming: &Naming, ui: &mut Ui, done: &mut Optio
             let field = NumberField::new("amount").range(0.0..=1e6).step(0.1).show(ui, content.amount.value);
             take(field, &mut content.amount.value).then_name(done, |value| {
                 format!("{} to {} {}", naming.name, plain(value, 4), content.amount.unit.symbol())
+            });
+            // The name takes what is left, from the left edge.
+            ui.with_layout(Layout::left_to_right(Align::Center), |ui| {
+                ui.add(eframe::egui::Label::new(&naming.name).truncate()).on_hover_text(&naming.name);
             });
         });
     });

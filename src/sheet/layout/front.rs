@@ -250,7 +250,7 @@ fn target(target: &Target, density: Density) -> Para {
         joined(&[&prefixed("before ", &target.before), &prefixed("after ", &target.after)], ", ");
     let text = joined(&[&wall, &prediction], "; ");
     Para::of(vec![
-        Span { text: format!("Ceiling, free {}: ", printable(&target.metal)), style: density.small_strong() },
+        Span { text: format!("Free {}: ", printable(&target.metal)), style: density.small_strong() },
         Span::new(&format!("{text}."), density.small()),
     ])
 }

@@ -1,0 +1,90 @@
+//! The decision on each demo bath, checked by an independent fine scan of the doses.
+
+use bathwright::bath::{Bath, DEMOS, Point, Solids, Wall};
+use bathwright::dosing::{Assessor, Band, Hold, search};
+use bathwright::equilibrium::{LN_10, Solver};
+
+fn hold_at(bands: &[Band], dose: f64) -> Option<Hold> {
+    bands.iter().find(|band| band.from <= dose && dose <= band.to).map(|band| band.hold)
+}
+
+/// Largest excess over all walls by brute force: a dense grid of pH and the three temperatures, no refinement.
+fn brute_force(bath: &Bath, doses: &[f64]) -> f64 {
+    let mut worst = f64::NEG_INFINITY;
+    let t = bath.project.tank.temperature_c;
+    for temperature in [t.low, t.set, t.high] {
+        let constants = bath.constants_at(temperature);
+        let mut solver = Solver::new();
+        let range = bath.ph().expect("the demo baths hold their pH");
+        for step in 0..=60 {
+            let ph = range.low + (range.high - range.low) * f64::from(step) / 60.0;
+            let point = Point { ph: Some(ph), doses };
+            let s = bath.solve_with(&mut solver, &constants, point, Solids::Walls).unwrap();
+            for limit in &bath.limits {
+                let log_free = s.ln_c[limit.component] / LN_10;
+                worst = worst.max(limit.ceiling.map_or(f64::NEG_INFINITY, |c| log_free - c.log10()));
+                worst = worst.max(limit.floor.map_or(f64::NEG_INFINITY, |f| f.log10() - log_free));
+            }
+            for (k, rule) in bath.rules.iter().enumerate() {
+                if *rule == bathwright::bath::Rule::MustNotForm {
+                    worst = worst.max(s.saturation_index(k));
+                }
+            }
+        }
+    }
+    worst
+}
+
+#[test]
+fn the_bands_of_every_demo_bath_agree_with_a_fine_scan() {
+    for demo in DEMOS {
+        let bath = Bath::resolve(&demo.project().unwrap()).unwrap();
+        let result = search(&bath, 0).unwrap();
+        let mut doses = bath.doses();
+        let max = bath.agents[0].max_g_l;
+        for step in 0..=80 {
+            doses[0] = max * f64::from(step) / 80.0;
+            let excess = brute_force(&bath, &doses);
+            let Some(hold) = hold_at(&result.bands, doses[0]) else { continue };
+            // Within rounding of a wall either answer is right.
+            if excess.abs() > 1e-4 {
+                assert_eq!(hold != Hold::Not, excess < 0.0, "{} at {} g/L: {excess}", demo.file, doses[0]);
+            }
+        }
+    }
+}
+
+#[test]
+fn the_smallest_dose_holds_and_a_little_less_does_not() {
+    for demo in DEMOS {
+        let bath = Bath::resolve(&demo.project().unwrap()).unwrap();
+        let result = search(&bath, 0).unwrap();
+        let found = result.found.unwrap_or_else(|| panic!("{}: no dose", demo.file));
+        let mut assessor = Assessor::new(&bath);
+        let mut doses = bath.doses();
+        doses[0] = found.dose_g_l;
+        let excess = |a: &bathwright::dosing::Assessment| {
+            if found.hold == Hold::Sure { a.excess_95() } else { a.excess() }
+        };
+        assert!(excess(&assessor.assess(&doses).unwrap()) <= 0.0, "{}", demo.file);
+        doses[0] = found.dose_g_l * 0.999;
+        assert!(excess(&assessor.assess(&doses).unwrap()) > 0.0, "{}: less would do", demo.file);
+    }
+}
+
+#[test]
+fn the_worst_case_is_never_better_than_any_point_of_the_range() {
+    for demo in DEMOS {
+        let bath = Bath::resolve(&demo.project().unwrap()).unwrap();
+        let doses: Vec<f64> = bath.agents.iter().map(|agent| 0.3 * agent.max_g_l).collect();
+        let assessment = Assessor::new(&bath).assess(&doses).unwrap();
+        assert!(assessment.walls.iter().any(|wall| matches!(wall.wall, Wall::Ceiling(_) | Wall::Solid(_))));
+        let brute = brute_force(&bath, &doses);
+        assert!(
+            assessment.excess() >= brute - 1e-6,
+            "{}: {} against {brute}",
+            demo.file,
+            assessment.excess()
+        );
+    }
+}
