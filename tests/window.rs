@@ -60,10 +60,7 @@ fn dose(harness: &Harness<'static, App>) -> f64 {
 #[test]
 fn the_window_opens_on_a_bath_with_a_problem_and_says_so() {
     let harness = lab();
-    assert!(
-        harness.query_by_label_contains("Not held").is_some()
-            || harness.query_by_label_contains("Infeasible").is_some()
-    );
+    assert!(harness.query_all_by_label_contains("Not held").count() > 0);
     harness.get_by_label("Find the dose F5");
 }
 

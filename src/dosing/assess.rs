@@ -5,7 +5,7 @@
 //! dose is, and wherever they do not form the result is that of the real bath.
 
 use crate::bath::{Bath, Point, Range, Solids, Wall};
-use crate::equilibrium::{Constants, Equilibrium, EquilibriumError, Solver};
+use crate::equilibrium::{Constants, Equilibrium, EquilibriumError, Solver, Value};
 
 /// Standard normal quantile of 95 %, one-sided.
 pub const CONFIDENCE_95: f64 = 1.644_853_627;
@@ -14,6 +14,12 @@ pub const CONFIDENCE_95: f64 = 1.644_853_627;
 const PH_SAMPLES: usize = 7;
 /// Golden-section steps of a refinement.
 const REFINEMENTS: usize = 14;
+
+/// Points whose excess is this much (log10) under the worst are not asked for their uncertainty.
+const CONFIDENCE_REACH: f64 = 0.7;
+
+/// Number of a temperature, and the pH to hold there.
+type Place = (usize, Option<f64>);
 
 /// A value at a point of operation.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -130,32 +136,51 @@ impl<'a> Assessor<'a> {
         for wall in self.walls.clone() {
             let (worst, excess) =
                 self.worst(&grid, doses, |bath, solution| excess_of(bath, wall, solution))?;
-            let (value, sigma) = self.value_and_sigma(wall, doses, worst)?;
-            let reading = Reading { ph: worst.2, temperature_c: self.temperatures[worst.0].0, value, sigma };
-            walls.push(WallReading {
-                wall,
-                worst: reading,
-                excess,
-                excess_95: excess + CONFIDENCE_95 * sigma,
-            });
+            let reading = self.read(value_of(self.bath, wall), doses, worst)?;
+            let excess_95 = excess + CONFIDENCE_95 * reading.sigma;
+            walls.push(WallReading { wall, worst: reading, excess, excess_95 });
         }
+        self.add_confidence(&grid, doses, &mut walls)?;
         let mut metals = Vec::with_capacity(self.bath.limits.len());
         for limit in 0..self.bath.limits.len() {
             let component = self.bath.limits[limit].component;
-            let as_wall = Wall::Ceiling(limit);
+            let value = Value::Free(component);
             let (most, _) = self.worst(&grid, doses, |_, s| s.ln_c[component])?;
             let (least, _) = self.worst(&grid, doses, |_, s| -s.ln_c[component])?;
-            let set_t = self.temperatures.iter().position(|(t, _)| *t == self.set.0).unwrap_or(0);
-            let mut readings = Vec::with_capacity(3);
-            for place in [(set_t, self.set.1, f64::NAN), most, least] {
-                let solution = self.solve(doses, place.0, place.1)?;
-                let ph = self.bath.system.proton.map_or(f64::NAN, |h| solution.ph(h));
-                let (value, sigma) = self.value_and_sigma(as_wall, doses, place)?;
-                readings.push(Reading { ph, temperature_c: self.temperatures[place.0].0, value, sigma });
-            }
-            metals.push(MetalReading { limit, set: readings[0], most: readings[1], least: readings[2] });
+            let set = self.temperatures.iter().position(|(t, _)| *t == self.set.0).unwrap_or(0);
+            metals.push(MetalReading {
+                limit,
+                set: self.read(value, doses, (set, self.set.1))?,
+                most: self.read(value, doses, most)?,
+                least: self.read(value, doses, least)?,
+            });
         }
         Ok(Assessment { walls, metals })
+    }
+
+    /// The confident excess of a wall is its largest over the range: a point with a little less excess and a larger
+    /// uncertainty can be the worse one.
+    fn add_confidence(
+        &mut self,
+        grid: &[(Place, Equilibrium)],
+        doses: &[f64],
+        walls: &mut [WallReading],
+    ) -> Result<(), EquilibriumError> {
+        let values: Vec<Value> = walls.iter().map(|wall| value_of(self.bath, wall.wall)).collect();
+        for (place, solution) in grid {
+            let excesses: Vec<f64> =
+                walls.iter().map(|wall| excess_of(self.bath, wall.wall, solution)).collect();
+            let near =
+                walls.iter().zip(&excesses).any(|(wall, excess)| *excess > wall.excess - CONFIDENCE_REACH);
+            if !near {
+                continue;
+            }
+            let sigmas = self.sigmas(&values, doses, *place, solution)?;
+            for ((wall, excess), sigma) in walls.iter_mut().zip(excesses).zip(sigmas) {
+                wall.excess_95 = wall.excess_95.max(excess + CONFIDENCE_95 * sigma);
+            }
+        }
+        Ok(())
     }
 
     /// log10 of the excess over the nearest wall, plain numbers only: what a search bisects.
@@ -172,41 +197,33 @@ impl<'a> Assessor<'a> {
         Ok(highest)
     }
 
-    fn solve(
-        &mut self,
-        doses: &[f64],
-        temperature: usize,
-        ph: Option<f64>,
-    ) -> Result<Equilibrium, EquilibriumError> {
+    fn solve(&mut self, doses: &[f64], (temperature, ph): Place) -> Result<Equilibrium, EquilibriumError> {
         let constants = &self.temperatures[temperature].1;
         self.bath.solve_with(&mut self.solver, constants, Point { ph, doses }, Solids::Walls)
     }
 
-    fn scan(&mut self, doses: &[f64]) -> Result<Vec<(usize, Option<f64>, Equilibrium)>, EquilibriumError> {
+    fn scan(&mut self, doses: &[f64]) -> Result<Vec<(Place, Equilibrium)>, EquilibriumError> {
         let mut grid = Vec::with_capacity(self.temperatures.len() * self.ph.len());
         for temperature in 0..self.temperatures.len() {
             for ph in self.ph.clone() {
-                grid.push((temperature, ph, self.solve(doses, temperature, ph)?));
+                grid.push(((temperature, ph), self.solve(doses, (temperature, ph))?));
             }
         }
         Ok(grid)
     }
 
-    /// The place (temperature, pH to hold, pH found) of the highest value of `measure`, refined between the scanned
-    /// pH values.
+    /// The place of the highest value of `measure`, refined between the scanned pH values, with that value.
     fn worst(
         &mut self,
-        grid: &[(usize, Option<f64>, Equilibrium)],
+        grid: &[(Place, Equilibrium)],
         doses: &[f64],
         measure: impl Fn(&Bath, &Equilibrium) -> f64,
-    ) -> Result<((usize, Option<f64>, f64), f64), EquilibriumError> {
-        let found_ph = |s: &Equilibrium| self.bath.system.proton.map_or(f64::NAN, |h| s.ph(h));
-        let scored: Vec<f64> = grid.iter().map(|(_, _, solution)| measure(self.bath, solution)).collect();
+    ) -> Result<(Place, f64), EquilibriumError> {
+        let scored: Vec<f64> = grid.iter().map(|(_, solution)| measure(self.bath, solution)).collect();
         let best = (0..grid.len()).max_by(|&a, &b| scored[a].total_cmp(&scored[b])).unwrap_or(0);
-        let (temperature, ph, solution) = &grid[best];
-        let mut place = (*temperature, *ph, found_ph(solution));
+        let mut place = grid[best].0;
         let mut highest = scored[best];
-        let Some(centre) = *ph else { return Ok((place, highest)) };
+        let Some(centre) = place.1 else { return Ok((place, highest)) };
         let at = self.ph.iter().position(|known| *known == Some(centre)).unwrap_or(0);
         let (Some(Some(low)), Some(Some(high))) =
             (at.checked_sub(1).and_then(|i| self.ph.get(i)).copied(), self.ph.get(at + 1).copied())
@@ -219,10 +236,10 @@ impl<'a> Assessor<'a> {
             let (left, right) = (b - ratio * (b - a), a + ratio * (b - a));
             let mut values = [0.0; 2];
             for (value, ph) in values.iter_mut().zip([left, right]) {
-                *value = measure(self.bath, &self.solve(doses, place.0, Some(ph))?);
+                *value = measure(self.bath, &self.solve(doses, (place.0, Some(ph)))?);
                 if *value > highest {
                     highest = *value;
-                    place = (place.0, Some(ph), ph);
+                    place.1 = Some(ph);
                 }
             }
             if values[0] > values[1] { b = right } else { a = left }
@@ -230,30 +247,40 @@ impl<'a> Assessor<'a> {
         Ok((place, highest))
     }
 
-    fn value_and_sigma(
-        &mut self,
-        wall: Wall,
+    /// A value with its uncertainty at a place.
+    fn read(&mut self, value: Value, doses: &[f64], place: Place) -> Result<Reading, EquilibriumError> {
+        let solution = self.solve(doses, place)?;
+        let sigma = self.sigmas(&[value], doses, place, &solution)?[0];
+        Ok(Reading {
+            ph: self.bath.system.proton.map_or(f64::NAN, |proton| solution.ph(proton)),
+            temperature_c: self.temperatures[place.0].0,
+            value: match value {
+                Value::Free(component) => solution.free(component),
+                Value::Saturation(solid) => solution.ln_saturation[solid].exp(),
+            },
+            sigma,
+        })
+    }
+
+    fn sigmas(
+        &self,
+        values: &[Value],
         doses: &[f64],
-        (temperature, ph, _): (usize, Option<f64>, f64),
-    ) -> Result<(f64, f64), EquilibriumError> {
-        let solution = self.solve(doses, temperature, ph)?;
+        (temperature, ph): Place,
+        solution: &Equilibrium,
+    ) -> Result<Vec<f64>, EquilibriumError> {
         let constants = &self.temperatures[temperature].1;
-        let (value, component) = match wall {
-            Wall::Ceiling(limit) | Wall::Floor(limit) => {
-                let component = self.bath.limits[limit].component;
-                (solution.free(component), Some(component))
-            }
-            Wall::Solid(solid) => (solution.ln_saturation[solid].exp(), None),
-        };
-        let sigma =
-            self.bath.sensitivities(constants, Point { ph, doses }, Solids::Walls, &solution, |answers| {
-                match (component, wall) {
-                    (Some(component), _) => answers.sigma_log10_free(component),
-                    (None, Wall::Solid(solid)) => answers.sigma_saturation_index(solid),
-                    (None, _) => 0.0,
-                }
-            })?;
-        Ok((value, sigma))
+        let point = Point { ph, doses };
+        self.bath
+            .sensitivities(constants, point, Solids::Walls, solution, |answers| answers.sigma_log10(values))
+    }
+}
+
+/// The value that a wall limits.
+fn value_of(bath: &Bath, wall: Wall) -> Value {
+    match wall {
+        Wall::Ceiling(limit) | Wall::Floor(limit) => Value::Free(bath.limits[limit].component),
+        Wall::Solid(solid) => Value::Saturation(solid),
     }
 }
 

@@ -24,7 +24,7 @@ pub use activity::{ActivityModel, DAVIES_LIMIT};
 pub use assemble::assemble;
 pub use certificate::Certificate;
 pub use error::EquilibriumError;
-pub use sensitivity::{Response, Sensitivities};
+pub use sensitivity::{Response, Sensitivities, Value};
 pub use solver::{Equilibrium, Problem, Solver};
 pub use system::{Constants, SolidEntry, SpeciesEntry, System, Terms};
 pub use temperature::{ConstantModel, TemperatureBasis};

@@ -16,6 +16,15 @@ pub struct Sensitivities<'a> {
     factor: LU<f64, Dyn, Dyn>,
 }
 
+/// A value whose uncertainty is asked for.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Value {
+    /// Free concentration of a component.
+    Free(usize),
+    /// Saturation ratio of a solid.
+    Saturation(usize),
+}
+
 /// Response of a solution to one input.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Response {
@@ -130,31 +139,29 @@ impl<'a> Sensitivities<'a> {
         response.ln_a[component] + z2 * self.solution.gamma.1 * response.ionic_strength
     }
 
-    /// Standard uncertainty of log10 of a free concentration, first order in the constants' uncertainties. A
-    /// published constant counts once, in all species whose chain it stands in.
-    pub fn sigma_log10_free(&self, component: usize) -> f64 {
-        self.sigma_log10(|_, response| self.ln_free(response, component))
+    /// Standard uncertainties of log10 of the given values, first order in the constants' uncertainties. A published
+    /// constant counts once, in all species whose chain it stands in.
+    pub fn sigma_log10(&self, values: &[Value]) -> Vec<f64> {
+        let mut variances = vec![0.0; values.len()];
+        for (index, constant) in self.problem.system.constants.iter().enumerate() {
+            let response = self.by_constant(index);
+            for (variance, value) in variances.iter_mut().zip(values) {
+                let slope = match *value {
+                    Value::Free(component) => self.ln_free(&response, component),
+                    Value::Saturation(solid) => self.ln_saturation(&response, solid, index),
+                };
+                *variance += (slope * constant.sigma_ln / super::LN_10).powi(2);
+            }
+        }
+        variances.into_iter().map(f64::sqrt).collect()
     }
 
-    /// Standard uncertainty of a saturation index, first order in the constants' uncertainties.
-    pub fn sigma_saturation_index(&self, solid: usize) -> f64 {
+    /// d ln(IAP/Ks) of a solid from the response to ln K of a constant.
+    fn ln_saturation(&self, response: &Response, solid: usize, constant: usize) -> f64 {
         let entry = &self.problem.system.solids[solid];
-        self.sigma_log10(|constant, response| {
-            let product: f64 = entry.components.iter().map(|&(i, nu)| nu * response.ln_a[i]).sum();
-            let own = entry.chain.iter().find(|(index, _)| *index == constant).map_or(0.0, |(_, n)| *n);
-            product - own
-        })
-    }
-
-    fn sigma_log10(&self, slope: impl Fn(usize, &Response) -> f64) -> f64 {
-        let constants = self.problem.system.constants.iter().enumerate();
-        let variance: f64 = constants
-            .map(|(index, constant)| {
-                let response = self.by_constant(index);
-                (slope(index, &response) * constant.sigma_ln / super::LN_10).powi(2)
-            })
-            .sum();
-        variance.sqrt()
+        let product: f64 = entry.components.iter().map(|&(i, nu)| nu * response.ln_a[i]).sum();
+        let own = entry.chain.iter().find(|(index, _)| *index == constant).map_or(0.0, |(_, n)| *n);
+        product - own
     }
 
     fn zero(&self) -> DVector<f64> {

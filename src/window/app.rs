@@ -261,6 +261,7 @@ impl App {
 
     fn replace(&mut self, document: Document) {
         self.document = document;
+        self.asked = None;
         self.view = View { across: Across::Ph, basis: None };
         self.thorough = None;
         self.find = None;

@@ -53,22 +53,32 @@ fn header(app: &mut App, ui: &mut Ui) {
                 bath.agents.get(agent).map_or("dose".to_owned(), |a| format!("dose of {}", a.product.name))
             }
         };
-        ComboBox::from_id_salt("across").selected_text(name(view.across)).width(70.0).show_ui(ui, |ui| {
-            for across in std::iter::once(Across::Ph).chain((0..bath.agents.len()).map(Across::Dose)) {
-                ui.selectable_value(&mut view.across, across, name(across));
-            }
-        });
-        ui.label(Text::Body.rich("for", p.ink2));
-        ComboBox::from_id_salt("basis").selected_text(&shown).width(110.0).show_ui(ui, |ui| {
-            for index in 0..bath.present.len() {
-                let component = bath.component(index);
-                let drawable = matches!(component.kind, ComponentKind::Metal | ComponentKind::Agent);
-                if drawable && quick.solution.totals[index] > 0.0 {
-                    let token = Some(component.token.clone());
-                    ui.selectable_value(&mut view.basis, token, &component.name);
+        ComboBox::from_id_salt("across")
+            .selected_text(name(view.across))
+            .width(70.0)
+            .show_ui(ui, |ui| {
+                for across in std::iter::once(Across::Ph).chain((0..bath.agents.len()).map(Across::Dose)) {
+                    ui.selectable_value(&mut view.across, across, name(across));
                 }
-            }
-        });
+            })
+            .response
+            .on_hover_text("what runs along the bottom");
+        ui.label(Text::Body.rich("for", p.ink2));
+        ComboBox::from_id_salt("basis")
+            .selected_text(&shown)
+            .width(110.0)
+            .show_ui(ui, |ui| {
+                for index in 0..bath.present.len() {
+                    let component = bath.component(index);
+                    let drawable = matches!(component.kind, ComponentKind::Metal | ComponentKind::Agent);
+                    if drawable && quick.solution.totals[index] > 0.0 {
+                        let token = Some(component.token.clone());
+                        ui.selectable_value(&mut view.basis, token, &component.name);
+                    }
+                }
+            })
+            .response
+            .on_hover_text("metal or agent whose whereabouts are drawn");
         ui.with_layout(Layout::right_to_left(Align::Center), |ui| {
             let set = bath.project.tank.temperature_c.set;
             let strength = crate::quantity::significant(quick.solution.ionic_strength, 2);

@@ -206,16 +206,19 @@ fn add_agent(app: &mut App, ui: &mut Ui) {
         .map(|product| (product.id.clone(), product.name.clone()))
         .collect();
     let mut chosen = None;
-    ComboBox::from_id_salt("add agent").selected_text("Add an agent").width(180.0).height(360.0).show_ui(
-        ui,
-        |ui| {
+    ComboBox::from_id_salt("add agent")
+        .selected_text("Add an agent")
+        .width(180.0)
+        .height(360.0)
+        .show_ui(ui, |ui| {
             for (id, name) in &products {
                 if ui.selectable_label(false, name).clicked() {
                     chosen = Some((id.clone(), name.clone()));
                 }
             }
-        },
-    );
+        })
+        .response
+        .on_hover_text("complexing agent to add");
     if let Some((product, name)) = chosen {
         app.document.project.agents.push(AgentDose {
             product,

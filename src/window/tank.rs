@@ -282,11 +282,16 @@ fn unit_box(content: &mut Content, naming: &Naming, ui: &mut Ui, done: &mut Opti
         Dimension::Hardness => !naming.product,
     };
     let before = content.amount.unit;
-    ComboBox::from_id_salt("unit").width(64.0).selected_text(before.symbol()).show_ui(ui, |ui| {
-        for unit in Unit::ALL.into_iter().filter(fits) {
-            ui.selectable_value(&mut content.amount.unit, unit, unit.symbol());
-        }
-    });
+    ComboBox::from_id_salt("unit")
+        .width(64.0)
+        .selected_text(before.symbol())
+        .show_ui(ui, |ui| {
+            for unit in Unit::ALL.into_iter().filter(fits) {
+                ui.selectable_value(&mut content.amount.unit, unit, unit.symbol());
+            }
+        })
+        .response
+        .on_hover_text("unit of the amount");
     if content.amount.unit != before {
         // Between units of one dimension the bath stays the same; otherwise the number stays.
         if content.amount.unit.dimension() == before.dimension() {
@@ -453,13 +458,18 @@ fn add_limit(app: &mut App, ui: &mut Ui, done: &mut Option<String>) {
         return;
     }
     let mut chosen = None;
-    ComboBox::from_id_salt("add limit").selected_text("Add a limit").width(140.0).show_ui(ui, |ui| {
-        for (name, p) in &open {
-            if ui.selectable_label(false, name).clicked() {
-                chosen = Some((name.clone(), *p));
+    ComboBox::from_id_salt("add limit")
+        .selected_text("Add a limit")
+        .width(140.0)
+        .show_ui(ui, |ui| {
+            for (name, p) in &open {
+                if ui.selectable_label(false, name).clicked() {
+                    chosen = Some((name.clone(), *p));
+                }
             }
-        }
-    });
+        })
+        .response
+        .on_hover_text("metal to limit");
     if let Some((metal, p)) = chosen {
         // A ceiling where the bath stands now: something to move, and no verdict made up.
         let ceiling = Some(Level::P((p * 10.0).round() / 10.0));
