@@ -45,6 +45,8 @@ pub(super) struct Stage {
     pub k: Vec<f64>,
     /// One value for each live column.
     pub y: Vec<f64>,
+    /// Whether the unknowns are species rather than components.
+    turned: bool,
 }
 
 impl Stage {
@@ -64,7 +66,7 @@ impl Stage {
         }
         let y = reduced.live.iter().map(|&column| x[column]).collect();
         let sparse = reduced.sparse();
-        Self { active: taken, reduced, sparse, k: Vec::new(), y }
+        Self { active: taken, reduced, sparse, k: Vec::new(), y, turned: false }
     }
 
     fn refresh(&mut self, fixed: &Fixed) {
@@ -78,10 +80,12 @@ impl Stage {
         minimiser.approach(&self.sparse, &self.k, &mut self.y);
         let mut outcome = minimiser.minimise(&self.sparse, &self.k, &mut self.y);
         for _ in 0..MAX_TURNS {
+            // Unknowns that were chosen far from the solution are chosen again until they suit it.
             let well_posed = outcome.converged && outcome.smallest_pivot > ILL_CONDITIONED;
-            if well_posed || !self.turn(&minimiser.c) {
+            if (well_posed && !self.turned) || !self.turn(&minimiser.c) {
                 break;
             }
+            self.turned = true;
             self.refresh(fixed);
             let steps = outcome.steps;
             outcome = minimiser.minimise(&self.sparse, &self.k, &mut self.y);
