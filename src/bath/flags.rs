@@ -48,7 +48,7 @@ impl std::fmt::Display for Flag {
             Flag::FromConstants(metal) => {
                 write!(f, "free {metal} is a number from constants: it is below what a shop can measure")
             }
-            Flag::Slow(name, reason) => write!(f, "{name} is slow: {reason}"),
+            Flag::Slow(name, reason) => write!(f, "{name}: {reason}"),
             Flag::Uncertified(residual) => {
                 write!(f, "the balances close only to {residual:.1e}; do not rely on this result")
             }

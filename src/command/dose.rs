@@ -167,7 +167,7 @@ pub fn text(decision: &Decision) -> Result<String, CommandError> {
     let product = &bath.agents[*agent].product;
     let solution = at_set_point(bath, &plan.rounded_doses)?;
     let mut text = heading(bath, &solution, &plan.rounded_doses);
-    text += "\nFree metals over the operating range, worst case\n";
+    text += "\nFree metals over the operating range, worst case, with walls kept in solution\n";
     text += &limits_table(bath, &plan.before, &plan.after);
     text += &format!("\nDoses of {}\n", product.name);
     let mut table = Table::new(&["from g/L", "to g/L", ""]);

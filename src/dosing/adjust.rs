@@ -18,8 +18,8 @@ pub struct Adjustment {
     pub proton_mol_l: f64,
 }
 
-/// Corrections smaller than this, mol/L, are left to the pH meter.
-const NEGLIGIBLE: f64 = 1e-6;
+/// A dose that moves the pH by less than this needs no correction: no meter in a shop shows it.
+const NEGLIGIBLE_PH: f64 = 0.02;
 
 /// The correction that keeps the set pH after the given doses; `None` when the pH is not held or none is needed.
 ///
@@ -34,7 +34,8 @@ pub fn adjustment(bath: &Bath, doses: &[f64]) -> Result<Option<Adjustment>, Equi
     let after = hydrogen(bath, &mut solver, &constants, ph, doses, proton)?;
     let brought = bath.totals(doses)[proton] - bath.contents[proton];
     let needed = after - before - brought;
-    if needed.abs() < NEGLIGIBLE {
+    let drift = ph_after(bath, doses, 0.0)?.map_or(f64::INFINITY, |left_alone| (left_alone - ph).abs());
+    if drift < NEGLIGIBLE_PH {
         return Ok(None);
     }
     let product = if needed < 0.0 { &bath.alkali } else { &bath.acid };

@@ -47,12 +47,17 @@ pub struct Plan {
     pub before: Assessment,
     /// The bath with the rounded doses.
     pub after: Assessment,
+    /// Share of an agent in the bath that one portion brings, where it is over the cap of one addition.
+    pub over_cap: Option<f64>,
     /// Why nothing may be printed: an acid into a bath that may hold cyanide, sulfide or hypochlorite.
     pub refused: Option<String>,
 }
 
 /// Most portions that one addition is split into.
-const MAX_PORTIONS: usize = 4;
+const MAX_PORTIONS: usize = 6;
+/// Largest share of the agent in the bath that one addition may bring, when the project names none (common
+/// practice: 15 %).
+const ADDITION_CAP: f64 = 0.15;
 /// Components that acid turns into a poisonous gas.
 const POISON_SOURCES: [(&str, &str); 3] = [("CN-", "cyanide"), ("HS-", "sulfide"), ("OCl-", "hypochlorite")];
 
@@ -87,8 +92,12 @@ pub fn plan(bath: &Bath, doses: &[f64]) -> Result<Plan, EquilibriumError> {
     let before = assessor.assess(&none)?;
     let after = assessor.assess(&rounded_doses)?;
     let refused = refusal(bath, &additions);
-    let steps = if refused.is_some() { Vec::new() } else { steps(bath, &rounded_doses, &additions)? };
-    Ok(Plan { rounded_doses, additions, steps, before, after, refused })
+    let portions = portions(bath, &rounded_doses, &additions)?;
+    let share = largest_share(bath, &rounded_doses) / portions as f64;
+    let over_cap = (share > addition_cap(bath) * (1.0 + 1e-9)).then_some(share);
+    let steps =
+        if refused.is_some() { Vec::new() } else { steps(bath, &rounded_doses, &additions, portions)? };
+    Ok(Plan { rounded_doses, additions, steps, before, after, over_cap, refused })
 }
 
 fn refusal(bath: &Bath, additions: &[Addition]) -> Option<String> {
@@ -111,12 +120,25 @@ fn refusal(bath: &Bath, additions: &[Addition]) -> Option<String> {
     ))
 }
 
-/// Agents in portions, each followed by its share of acid or alkali, so that the pH stays inside its range.
-fn steps(bath: &Bath, doses: &[f64], additions: &[Addition]) -> Result<Vec<Step>, EquilibriumError> {
-    let agents = additions.iter().filter(|addition| addition.agent.is_some()).count();
+fn addition_cap(bath: &Bath) -> f64 {
+    bath.project.sheet.addition_cap_percent.map_or(ADDITION_CAP, |percent| percent / 100.0)
+}
+
+/// The largest part of an agent already in the bath that the doses bring; 0 for agents that the bath does not hold yet.
+fn largest_share(bath: &Bath, doses: &[f64]) -> f64 {
+    let shares = bath.agents.iter().zip(doses).map(|(agent, dose)| {
+        let there = bath.contents[agent.active];
+        if there > 0.0 { dose * agent.per_gram[agent.active] / there } else { 0.0 }
+    });
+    shares.fold(0.0, f64::max)
+}
+
+/// How many portions keep the pH inside its range and each addition under its cap, up to the most that is reasonable.
+fn portions(bath: &Bath, doses: &[f64], additions: &[Addition]) -> Result<usize, EquilibriumError> {
+    let by_cap = (largest_share(bath, doses) / addition_cap(bath)).ceil().max(1.0) as usize;
+    let mut portions = by_cap.min(MAX_PORTIONS);
     let corrected = additions.iter().any(|addition| addition.agent.is_none());
-    let mut portions = 1;
-    if let Some(range) = bath.ph().filter(|_| corrected && agents > 0) {
+    if let Some(range) = bath.ph().filter(|_| corrected) {
         while portions < MAX_PORTIONS {
             let share: Vec<f64> = doses.iter().map(|dose| dose / portions as f64).collect();
             match ph_after(bath, &share, 0.0)? {
@@ -125,6 +147,16 @@ fn steps(bath: &Bath, doses: &[f64], additions: &[Addition]) -> Result<Vec<Step>
             }
         }
     }
+    Ok(portions)
+}
+
+/// Agents in portions, each followed by its share of acid or alkali.
+fn steps(
+    bath: &Bath,
+    doses: &[f64],
+    additions: &[Addition],
+    portions: usize,
+) -> Result<Vec<Step>, EquilibriumError> {
     let volume = bath.project.tank.volume_l;
     let mut steps = Vec::new();
     let mut added = vec![0.0; doses.len()];

@@ -44,10 +44,10 @@ pub struct Reason {
 }
 
 /// Largest shift of pH that is tried, and its step.
-const PH_REACH: f64 = 3.0;
+const PH_REACH: f64 = 1.5;
 const PH_STEP: f64 = 0.1;
 /// Largest multiple of the cap that is tried.
-const CAP_REACH: f64 = 16.0;
+const CAP_REACH: f64 = 4.0;
 /// Other products offered at most.
 const OFFERS: usize = 3;
 
@@ -109,7 +109,7 @@ fn larger_cap(bath: &Bath, agent: usize) -> Result<Option<Change>, EquilibriumEr
     let mut wider = bath.clone();
     let mut factor = 2.0;
     while factor <= CAP_REACH {
-        wider.agents[agent].max_g_l = (bath.agents[agent].max_g_l * factor).min(1000.0);
+        wider.agents[agent].max_g_l = bath.agents[agent].max_g_l * factor;
         if let Some(dose) = search(&wider, agent)?.plain_g_l {
             return Ok(Some(Change::Cap(dose)));
         }

@@ -33,11 +33,11 @@ pub fn content(
         found: found(bath),
         targets: targets(bath, plan),
         before_you_start: before_you_start(),
-        additions: plan.steps.iter().map(|step| addition(bath, plan, step)).collect(),
+        additions: (0..plan.steps.len()).map(|number| addition(bath, plan, number)).collect(),
         refused: plan.refused.clone(),
-        stop: stop(bath),
-        retest: if refused { Retest::default() } else { retest(bath, plan) },
-        chemists_number: chemists_number(plan, verdict),
+        stop: stop(bath, plan),
+        retest: if refused { Retest::default() } else { retest(bath, plan, &solution) },
+        chemists_number: chemists_number(bath, plan, verdict),
         cautions: cautions(plan),
         sign_off: [
             "Issued by (chemist)",
@@ -73,7 +73,7 @@ fn header(bath: &Bath, solution: &Equilibrium, date: Option<String>) -> Header {
         program_version: format!("Bathwright {}", env!("CARGO_PKG_VERSION")),
         project_hash: project_hash(bath),
         basis: Some(format!(
-            "constants moved to {} °C, I = {} mol/L, equilibrium only",
+            "{} °C, I = {} mol/L, equilibrium only",
             fixed(project.tank.temperature_c.set, 0),
             significant(solution.ionic_strength, 2),
         )),
@@ -109,7 +109,7 @@ fn found(bath: &Bath) -> Vec<Finding> {
     }];
     if let Some(range) = bath.ph() {
         findings.push(Finding {
-            label: "pH at 25 °C".to_owned(),
+            label: "pH at bath temp.".to_owned(),
             value: fixed(range.set, 2),
             range: format!("range {} to {}", plain(range.low, 2), plain(range.high, 2)),
             evidence: "set point".to_owned(),
@@ -206,7 +206,9 @@ fn before_you_start() -> Vec<String> {
         .to_vec()
 }
 
-fn addition(bath: &Bath, plan: &Plan, step: &Step) -> Addition {
+fn addition(bath: &Bath, plan: &Plan, number: usize) -> Addition {
+    let step: &Step = &plan.steps[number];
+    let first = plan.steps[..number].iter().position(|earlier| earlier.addition == step.addition);
     let whole = &plan.additions[step.addition];
     let product = &whole.product;
     let (portion, portions) = step.portion;
@@ -231,7 +233,10 @@ fn addition(bath: &Bath, plan: &Plan, step: &Step) -> Addition {
     let slow = step.measured.rounded_kg >= SLOW_ADDITION_KG;
     Addition {
         material: product.name.clone(),
-        details: details(product),
+        details: match first {
+            Some(first) => vec![format!("same drum as step {}", first + 1)],
+            None => details(product),
+        },
         amount: if by_meter {
             format!("up to {}", step.measured.amount)
         } else {
@@ -239,10 +244,10 @@ fn addition(bath: &Bath, plan: &Plan, step: &Step) -> Addition {
         },
         measure,
         exact,
-        how: if product.dissolve.is_empty() {
-            "Over the weir, slowly, with the pump on.".to_owned()
-        } else {
-            product.dissolve.clone()
+        how: match first {
+            Some(first) => format!("As in step {}.", first + 1),
+            None if product.dissolve.is_empty() => "Over the weir, slowly, with the pump on.".to_owned(),
+            None => product.dissolve.clone(),
         },
         add_over: Some(if slow { "10 min" } else { "5 min" }.to_owned()),
         wait: Some("5 min".to_owned()),
@@ -269,10 +274,16 @@ fn details(product: &Product) -> Vec<String> {
     lines
 }
 
-fn stop(bath: &Bath) -> Vec<String> {
+/// Room beyond the operating range, and beyond what the additions themselves do, before the operator has to stop.
+const STOP_PH_ROOM: f64 = 0.3;
+
+fn stop(bath: &Bath, plan: &Plan) -> Vec<String> {
     let mut stop = Vec::new();
     if let Some(range) = bath.ph() {
-        stop.push(format!("pH under {} or over {}", plain(range.low, 2), plain(range.high, 2)));
+        let on_the_way = || plan.steps.iter().filter_map(|step| step.ph_after);
+        let low = on_the_way().fold(range.low, f64::min) - STOP_PH_ROOM;
+        let high = on_the_way().fold(range.high, f64::max) + STOP_PH_ROOM;
+        stop.push(format!("pH under {} or over {}", fixed(low, 1), fixed(high, 1)));
     }
     stop.push(format!("above {} °C", plain(bath.project.tank.temperature_c.high + 2.0, 0)));
     for condition in
@@ -283,10 +294,10 @@ fn stop(bath: &Bath) -> Vec<String> {
     stop
 }
 
-fn retest(bath: &Bath, plan: &Plan) -> Retest {
+fn retest(bath: &Bath, plan: &Plan, solution: &Equilibrium) -> Retest {
     let mut columns = Vec::new();
     if let Some(range) = bath.ph() {
-        columns.push(RetestColumn { label: "pH at 25 °C".to_owned(), expect: spread(range.set) });
+        columns.push(RetestColumn { label: "pH at bath temp.".to_owned(), expect: spread(range.set) });
     }
     let t = bath.project.tank.temperature_c;
     columns.push(RetestColumn {
@@ -303,14 +314,17 @@ fn retest(bath: &Bath, plan: &Plan) -> Retest {
         let acid = if component.acid_form.is_some() { ", as acid" } else { "" };
         columns.push(RetestColumn { label: format!("{}{acid}", capitalised(&component.name)), expect });
     }
-    columns.push(RetestColumn { label: "Look".to_owned(), expect: "clear".to_owned() });
+    let haze = (0..solution.solids.len()).find(|&k| solution.solids[k] > 0.0);
+    let expect =
+        haze.map_or("clear".to_owned(), |k| format!("haze: {}", pretty(&bath.system.solids[k].token)));
+    columns.push(RetestColumn { label: "Look".to_owned(), expect });
     Retest {
         intro: "Wait 20 minutes with the pump on, then test. Do not add again meanwhile.".to_owned(),
         columns,
     }
 }
 
-fn chemists_number(plan: &Plan, verdict: &Verdict) -> String {
+fn chemists_number(bath: &Bath, plan: &Plan, verdict: &Verdict) -> String {
     let mut text = format!(
         "nearest limit before {}, after {} ({} with 95 % confidence). {}. {} Calculated, not measured.",
         share_of_limit(plan.before.excess()),
@@ -319,6 +333,15 @@ fn chemists_number(plan: &Plan, verdict: &Verdict) -> String {
         verdict.state.word(),
         verdict.sentence,
     );
+    if let Some(share) = plan.over_cap {
+        text += &format!(
+            " Each part brings {} of the agent in the bath, more than one addition should: re-test before the next.",
+            crate::quantity::percent(share)
+        );
+    }
+    if bath.ph().is_some() {
+        text += " pH is meant at bath temperature; a cooled sample reads otherwise.";
+    }
     for addition in
         plan.additions.iter().filter(|a| a.agent.is_some() && a.measured.change.abs() > ROUNDING_FLAG)
     {

@@ -5,7 +5,7 @@ use super::model::{Align, Column, Table};
 use crate::bath::Bath;
 use crate::chemistry::{pretty, pretty_reaction};
 use crate::dosing::{Plan, share_of_limit};
-use crate::equilibrium::{Equilibrium, LN_10};
+use crate::equilibrium::{ActivityModel, Equilibrium, LN_10};
 use crate::quantity::{fixed, kelvin, p_value, percent, significant};
 
 /// Species under this share of every component they hold are left out of the printed tables.
@@ -140,9 +140,12 @@ pub(super) fn constants_table(bath: &Bath, solution: &Equilibrium, temperature_c
     });
     Table {
         title: format!(
-            "Constants behind the species above, and as used at {} °C ({})",
+            "Constants behind the species above; as used: at {} °C{}",
             fixed(temperature_c, 0),
-            bath.project.activity.name()
+            match bath.project.activity {
+                ActivityModel::Davies => " and zero ionic strength, before the Davies correction",
+                ActivityModel::AsMeasured => ", H⁺ as activity",
+            }
         ),
         columns: columns(&[
             ("reaction", Align::Left, 2.8),

@@ -12,6 +12,7 @@ use crate::sheet::model::{Addition, Align};
 
 /// Widths of the columns that are the same on every sheet, points: step number, amount, initials.
 const STEP_WIDTH: f32 = 29.0;
+const TWO_DIGIT_STEP_WIDTH: f32 = 41.0;
 const AMOUNT_WIDTH: f32 = 142.0;
 const INITIALS_WIDTH: f32 = 48.0;
 /// Index of the pH column, and the least and most width it takes, points.
@@ -43,8 +44,9 @@ pub(super) fn additions(flow: &mut Flow, additions: &[Addition]) {
     let rows: Vec<Row> = additions.iter().enumerate().map(|(index, a)| step(index + 1, a, density)).collect();
     let ph = rows.iter().map(|row| row.cells[PH].need().best).fold(0.0, f32::max) + 2.0 * PAD_X;
     let ph = ph.clamp(PH_LEAST, PH_MOST);
-    let rest = flow.area.width() - STEP_WIDTH - AMOUNT_WIDTH - ph - INITIALS_WIDTH;
-    let widths = vec![STEP_WIDTH, rest * 0.52, AMOUNT_WIDTH, rest * 0.48, ph, INITIALS_WIDTH];
+    let step_width = if additions.len() < 10 { STEP_WIDTH } else { TWO_DIGIT_STEP_WIDTH };
+    let rest = flow.area.width() - step_width - AMOUNT_WIDTH - ph - INITIALS_WIDTH;
+    let widths = vec![step_width, rest * 0.52, AMOUNT_WIDTH, rest * 0.48, ph, INITIALS_WIDTH];
     let spec = TableSpec {
         header: vec![header],
         grid: Grid::Full,
