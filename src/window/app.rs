@@ -2,7 +2,7 @@
 
 use super::answer::{Across, Answer, Quick, Request, Thorough, View};
 use super::command::Command;
-use super::dialogs::{Ask, Pending, Purpose, SystemDialogs};
+use super::dialogs::{Ask, Pending, Purpose, dialogs};
 use super::document::Document;
 use super::worker::Worker;
 use super::{bath_page, frame, sheet_page, theme};
@@ -54,7 +54,7 @@ pub struct App {
 impl App {
     /// The window's state for a project, with the system's file dialogs.
     pub fn new(ctx: &Context, project: Project, path: Option<PathBuf>) -> Self {
-        Self::with_dialogs(ctx, project, path, Arc::new(SystemDialogs))
+        Self::with_dialogs(ctx, project, path, dialogs())
     }
 
     /// As [`App::new`], with something else to answer the file dialogs.
@@ -114,9 +114,8 @@ impl App {
 
     /// Whether every picture answers the project as it stands.
     pub fn is_current(&self) -> bool {
-        self.answered == self.generation
-            && self.thorough.as_ref().is_some_and(|t| t.generation == self.generation)
-            || self.error.is_some() && self.answered == self.generation
+        let searched = self.thorough.as_ref().is_some_and(|thorough| thorough.generation == self.generation);
+        self.answered == self.generation && (searched || self.error.is_some())
     }
 
     /// Whether the fast part answers the project as it stands.
