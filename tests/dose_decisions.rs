@@ -1,6 +1,6 @@
 //! The decision on each demo bath, checked by an independent fine scan of the doses.
 
-use bathwright::bath::{Bath, DEMOS, Point, Solids, Wall};
+use bathwright::bath::{Bath, DEMOS, Solids, Wall};
 use bathwright::dosing::{Assessor, Band, Hold, search};
 use bathwright::equilibrium::{LN_10, Solver};
 
@@ -12,14 +12,14 @@ fn hold_at(bands: &[Band], dose: f64) -> Option<Hold> {
 fn brute_force(bath: &Bath, doses: &[f64]) -> f64 {
     let mut worst = f64::NEG_INFINITY;
     let t = bath.project.tank.temperature_c;
+    let totals = bath.corrected(doses).unwrap().totals;
     for temperature in [t.low, t.set, t.high] {
         let constants = bath.constants_at(temperature);
         let mut solver = Solver::new();
         let range = bath.ph().expect("the demo baths hold their pH");
         for step in 0..=60 {
             let ph = range.low + (range.high - range.low) * f64::from(step) / 60.0;
-            let point = Point { ph: Some(ph), doses };
-            let s = bath.solve_with(&mut solver, &constants, point, Solids::Walls).unwrap();
+            let s = bath.solve_totals(&mut solver, &constants, &totals, Some(ph), Solids::Walls).unwrap();
             for limit in &bath.limits {
                 let log_free = s.ln_c[limit.component] / LN_10;
                 worst = worst.max(limit.ceiling.map_or(f64::NEG_INFINITY, |c| log_free - c.log10()));

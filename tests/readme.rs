@@ -6,7 +6,8 @@ use bathwright::equilibrium::Solver;
 #[test]
 fn the_project_file_of_the_readme_solves_to_its_own_constants() {
     let readme = include_str!("../README.md");
-    let text = readme.split("```ron").nth(1).and_then(|rest| rest.split("```").next()).expect("an example file");
+    let text =
+        readme.split("```ron").nth(1).and_then(|rest| rest.split("```").next()).expect("an example file");
     let bath = Bath::resolve(&read(text, "README.md").unwrap()).unwrap();
     let constants = bath.constants_at(25.0);
     let solution = bath.solve(&mut Solver::new(), &constants, Point { ph: Some(7.0), doses: &[] }).unwrap();

@@ -3,6 +3,7 @@
 //!
 //! This floor may read and write files; it knows no dose search, no sheet and no window.
 
+mod adjust;
 mod demo;
 mod error;
 mod file;
@@ -13,6 +14,7 @@ mod project;
 mod recipe;
 mod resolve;
 
+pub use adjust::{Adjuster, Adjustment, Corrected};
 pub use demo::{DEMOS, Demo};
 pub use error::BathError;
 pub use file::{FileError, load, read, replace_file, save, write};
@@ -22,5 +24,4 @@ pub use operating::{Ph, Range};
 pub use project::{
     Adjust, AgentDose, Content, FORMAT, Limit, Project, Rule, SheetDetails, SolidRule, Tank, Trust,
 };
-pub use recipe::proton_moles_per_gram;
 pub use resolve::{Agent, Bath, Point, ResolvedLimit, Solids, Wall};

@@ -1,7 +1,7 @@
 //! From a line of the recipe to moles of components per litre of bath.
 
 use super::error::BathError;
-use crate::chemistry::{Catalogue, Library, PROTON, Product};
+use crate::chemistry::{Catalogue, Library, Product};
 use crate::quantity::{Amount, Dimension};
 use std::collections::BTreeMap;
 
@@ -130,9 +130,15 @@ pub fn moles_per_gram(field: &str, product: &Product, library: &Library) -> Resu
     Ok(moles)
 }
 
-/// Moles of acid (positive) or alkali (negative) that one gram of an adjusting product brings.
-pub fn proton_moles_per_gram(product: &Product) -> f64 {
-    product.released(PROTON) * product.moles_per_gram().unwrap_or(0.0)
+/// As [`moles_per_gram`], leaving out what the library does not know: in a bath that brings its whole chemistry the
+/// other ions of the shop's acid and alkali take no part.
+///
+/// # Errors
+/// [`BathError::Chemistry`] for a bad formula.
+pub fn known_moles_per_gram(field: &str, product: &Product, library: &Library) -> Result<Moles, BathError> {
+    let mut known = product.clone();
+    known.releases.retain(|(token, _)| library.component(token).is_some());
+    moles_per_gram(field, &known, library)
 }
 
 #[cfg(test)]

@@ -1,10 +1,11 @@
 //! The bath: a project resolved to totals in mol/L of a chemical system, ready to be solved at any operating point.
 
+use super::adjust::Adjuster;
 use super::error::BathError;
 use super::operating::{Ph, Range};
 use super::project::{Project, Rule};
 use super::recipe::{self, Moles};
-use crate::chemistry::{Catalogue, ComponentKind, Library, PROTON, Product};
+use crate::chemistry::{Catalogue, ComponentKind, Library, Product};
 use crate::equilibrium::{
     Constants, Equilibrium, EquilibriumError, LN_10, Problem, Sensitivities, Solver, System, assemble,
 };
@@ -79,9 +80,9 @@ pub struct Bath {
     /// How each solid of the system is treated.
     pub rules: Vec<Rule>,
     /// Product that raises pH.
-    pub alkali: Product,
+    pub alkali: Adjuster,
     /// Product that lowers pH.
-    pub acid: Product,
+    pub acid: Adjuster,
 }
 
 /// Which solids take part in an equilibrium.
@@ -134,18 +135,15 @@ impl Bath {
         }
         let alkali = product("adjust.alkali", &project.adjust.alkali)?;
         let acid = product("adjust.acid", &project.adjust.acid)?;
-        for (field, product, wrong) in [
-            ("adjust.alkali", &alkali, alkali.released(PROTON) >= 0.0),
-            ("adjust.acid", &acid, acid.released(PROTON) <= 0.0),
-        ] {
-            if wrong {
-                let fix = "it brings no hydroxide (alkali) or no hydrogen ion (acid); choose one that does";
-                let name = product.name.clone();
-                return Err(BathError::Unknown { field: field.to_owned(), name, fix: fix.to_owned() });
-            }
-        }
+        let alkali_moles = recipe::known_moles_per_gram("adjust.alkali", &alkali, &library)?;
+        let acid_moles = recipe::known_moles_per_gram("adjust.acid", &acid, &library)?;
         let mut present: Vec<usize> = library.proton().into_iter().collect();
-        let brought = all.iter().chain(agents.iter().map(|(_, moles)| moles)).flat_map(|moles| moles.keys());
+        let adjusters = [&alkali_moles, &acid_moles];
+        let brought = all
+            .iter()
+            .chain(agents.iter().map(|(_, moles)| moles))
+            .chain(adjusters)
+            .flat_map(|moles| moles.keys());
         for &component in brought {
             if !present.contains(&component) {
                 present.push(component);
@@ -174,6 +172,8 @@ impl Bath {
                 product,
             })
             .collect();
+        let alkali = Adjuster { per_gram: spread(&alkali_moles), product: alkali };
+        let acid = Adjuster { per_gram: spread(&acid_moles), product: acid };
         let limits = resolve_limits(project, &library, &present)?;
         let rules = resolve_rules(project, &library, &system, &limits)?;
         let project = project.clone();
@@ -266,16 +266,17 @@ impl Bath {
     pub fn sensitivities<T>(
         &self,
         constants: &Constants,
-        point: Point,
+        totals: &[f64],
+        ph: Option<f64>,
         solids: Solids,
         solution: &Equilibrium,
         ask: impl FnOnce(&Sensitivities) -> T,
     ) -> Result<T, EquilibriumError> {
-        let (totals, held, may_form) = (self.totals(point.doses), self.held(point.ph), self.may_form(solids));
+        let (held, may_form) = (self.held(ph), self.may_form(solids));
         let problem = Problem {
             system: &self.system,
             constants,
-            totals: &totals,
+            totals,
             held: &held,
             may_form: &may_form,
             counter_ion: true,

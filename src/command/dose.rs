@@ -261,6 +261,9 @@ pub fn additions(decision: &Decision) -> String {
         ]);
     }
     text += &table.text();
+    if let Some(failure) = &plan.uncorrected {
+        text += &format!("Note: {failure}.\n");
+    }
     text
 }
 

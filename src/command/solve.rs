@@ -2,7 +2,7 @@
 
 use super::table::Table;
 use super::{CommandError, Outcome, print};
-use crate::bath::{Bath, Point, Rule, flags};
+use crate::bath::{Bath, Rule, Solids, flags};
 use crate::chemistry::pretty;
 use crate::equilibrium::{Equilibrium, Solver};
 use crate::quantity::{fixed, p_value, significant};
@@ -27,7 +27,8 @@ pub fn run(bath: &Bath, as_json: bool, out: &mut dyn Write) -> Result<Outcome, C
 /// The real bath at its set point.
 pub fn at_set_point(bath: &Bath, doses: &[f64]) -> Result<Equilibrium, CommandError> {
     let constants = bath.constants_at(bath.project.tank.temperature_c.set);
-    Ok(bath.solve(&mut Solver::new(), &constants, Point { ph: bath.ph_set(), doses })?)
+    let totals = bath.corrected(doses)?.totals;
+    Ok(bath.solve_totals(&mut Solver::new(), &constants, &totals, bath.ph_set(), Solids::Real)?)
 }
 
 fn ph(bath: &Bath, solution: &Equilibrium) -> Option<f64> {
@@ -57,9 +58,12 @@ pub fn json_object(bath: &Bath, solution: &Equilibrium, doses: &[f64]) -> Map<St
         free.insert(bath.system.components[metal].clone(), entry);
     }
     let species = bath.system.species.iter().zip(&solution.c);
-    let species: Map<String, Value> = species.map(|(s, c)| (s.token.clone(), finite(*c))).collect();
+    let species: Map<String, Value> =
+        species.filter(|(_, c)| **c > 0.0).map(|(s, c)| (s.token.clone(), finite(*c))).collect();
     let mut solids = Map::new();
-    for (k, solid) in bath.system.solids.iter().enumerate() {
+    let possible = |k: &usize| solution.ln_saturation[*k].is_finite();
+    for k in (0..bath.system.solids.len()).filter(possible) {
+        let solid = &bath.system.solids[k];
         let entry = json!({
             "mol_per_L": solution.solids[k],
             "saturation_index": finite(solution.saturation_index(k)),

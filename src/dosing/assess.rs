@@ -4,8 +4,8 @@
 //! corners. Solids that must not form are kept in solution here: their saturation index then says how far off a
 //! dose is, and wherever they do not form the result is that of the real bath.
 
-use crate::bath::{Bath, Point, Range, Solids, Wall};
-use crate::equilibrium::{Constants, Equilibrium, EquilibriumError, Solver, Value};
+use crate::bath::{Bath, Range, Solids, Wall};
+use crate::equilibrium::{Constants, Equilibrium, EquilibriumError, Sensitivities, Solver, Value};
 
 /// Standard normal quantile of 95 %, one-sided.
 pub const CONFIDENCE_95: f64 = 1.644_853_627;
@@ -94,6 +94,8 @@ pub struct Assessor<'a> {
     set: (f64, Option<f64>),
     walls: Vec<Wall>,
     solver: Solver,
+    /// Totals of the doses at hand, with the acid or alkali that they make necessary.
+    totals: Vec<f64>,
 }
 
 impl<'a> Assessor<'a> {
@@ -117,6 +119,7 @@ impl<'a> Assessor<'a> {
             set: (range.set, ph.map(|range| range.set)),
             walls,
             solver: Solver::new(),
+            totals: Vec::new(),
             bath,
         }
     }
@@ -131,28 +134,28 @@ impl<'a> Assessor<'a> {
     /// # Errors
     /// [`EquilibriumError`] for an ill-posed bath.
     pub fn assess(&mut self, doses: &[f64]) -> Result<Assessment, EquilibriumError> {
-        let grid = self.scan(doses)?;
+        self.totals = self.bath.corrected(doses)?.totals;
+        let grid = self.scan()?;
         let mut walls = Vec::with_capacity(self.walls.len());
         for wall in self.walls.clone() {
-            let (worst, excess) =
-                self.worst(&grid, doses, |bath, solution| excess_of(bath, wall, solution))?;
-            let reading = self.read(value_of(self.bath, wall), doses, worst)?;
+            let (worst, excess) = self.worst(&grid, |bath, solution| excess_of(bath, wall, solution))?;
+            let reading = self.read(value_of(self.bath, wall), worst)?;
             let excess_95 = excess + CONFIDENCE_95 * reading.sigma;
             walls.push(WallReading { wall, worst: reading, excess, excess_95 });
         }
-        self.add_confidence(&grid, doses, &mut walls)?;
+        self.add_confidence(&grid, &mut walls)?;
         let mut metals = Vec::with_capacity(self.bath.limits.len());
         for limit in 0..self.bath.limits.len() {
             let component = self.bath.limits[limit].component;
             let value = Value::Free(component);
-            let (most, _) = self.worst(&grid, doses, |_, s| s.ln_c[component])?;
-            let (least, _) = self.worst(&grid, doses, |_, s| -s.ln_c[component])?;
+            let (most, _) = self.worst(&grid, |_, s| s.ln_c[component])?;
+            let (least, _) = self.worst(&grid, |_, s| -s.ln_c[component])?;
             let set = self.temperatures.iter().position(|(t, _)| *t == self.set.0).unwrap_or(0);
             metals.push(MetalReading {
                 limit,
-                set: self.read(value, doses, (set, self.set.1))?,
-                most: self.read(value, doses, most)?,
-                least: self.read(value, doses, least)?,
+                set: self.read(value, (set, self.set.1))?,
+                most: self.read(value, most)?,
+                least: self.read(value, least)?,
             });
         }
         Ok(Assessment { walls, metals })
@@ -163,7 +166,6 @@ impl<'a> Assessor<'a> {
     fn add_confidence(
         &mut self,
         grid: &[(Place, Equilibrium)],
-        doses: &[f64],
         walls: &mut [WallReading],
     ) -> Result<(), EquilibriumError> {
         let values: Vec<Value> = walls.iter().map(|wall| value_of(self.bath, wall.wall)).collect();
@@ -175,7 +177,7 @@ impl<'a> Assessor<'a> {
             if !near {
                 continue;
             }
-            let sigmas = self.sigmas(&values, doses, *place, solution)?;
+            let sigmas = self.sigmas(&values, *place, solution)?;
             for ((wall, excess), sigma) in walls.iter_mut().zip(excesses).zip(sigmas) {
                 wall.excess_95 = wall.excess_95.max(excess + CONFIDENCE_95 * sigma);
             }
@@ -188,25 +190,26 @@ impl<'a> Assessor<'a> {
     /// # Errors
     /// [`EquilibriumError`] for an ill-posed bath.
     pub fn excess(&mut self, doses: &[f64]) -> Result<f64, EquilibriumError> {
-        let grid = self.scan(doses)?;
+        self.totals = self.bath.corrected(doses)?.totals;
+        let grid = self.scan()?;
         let mut highest = f64::NEG_INFINITY;
         for wall in self.walls.clone() {
-            let (_, excess) = self.worst(&grid, doses, |bath, solution| excess_of(bath, wall, solution))?;
+            let (_, excess) = self.worst(&grid, |bath, solution| excess_of(bath, wall, solution))?;
             highest = highest.max(excess);
         }
         Ok(highest)
     }
 
-    fn solve(&mut self, doses: &[f64], (temperature, ph): Place) -> Result<Equilibrium, EquilibriumError> {
+    fn solve(&mut self, (temperature, ph): Place) -> Result<Equilibrium, EquilibriumError> {
         let constants = &self.temperatures[temperature].1;
-        self.bath.solve_with(&mut self.solver, constants, Point { ph, doses }, Solids::Walls)
+        self.bath.solve_totals(&mut self.solver, constants, &self.totals, ph, Solids::Walls)
     }
 
-    fn scan(&mut self, doses: &[f64]) -> Result<Vec<(Place, Equilibrium)>, EquilibriumError> {
+    fn scan(&mut self) -> Result<Vec<(Place, Equilibrium)>, EquilibriumError> {
         let mut grid = Vec::with_capacity(self.temperatures.len() * self.ph.len());
         for temperature in 0..self.temperatures.len() {
             for ph in self.ph.clone() {
-                grid.push(((temperature, ph), self.solve(doses, (temperature, ph))?));
+                grid.push(((temperature, ph), self.solve((temperature, ph))?));
             }
         }
         Ok(grid)
@@ -216,7 +219,6 @@ impl<'a> Assessor<'a> {
     fn worst(
         &mut self,
         grid: &[(Place, Equilibrium)],
-        doses: &[f64],
         measure: impl Fn(&Bath, &Equilibrium) -> f64,
     ) -> Result<(Place, f64), EquilibriumError> {
         let scored: Vec<f64> = grid.iter().map(|(_, solution)| measure(self.bath, solution)).collect();
@@ -236,7 +238,7 @@ impl<'a> Assessor<'a> {
             let (left, right) = (b - ratio * (b - a), a + ratio * (b - a));
             let mut values = [0.0; 2];
             for (value, ph) in values.iter_mut().zip([left, right]) {
-                *value = measure(self.bath, &self.solve(doses, (place.0, Some(ph)))?);
+                *value = measure(self.bath, &self.solve((place.0, Some(ph)))?);
                 if *value > highest {
                     highest = *value;
                     place.1 = Some(ph);
@@ -248,9 +250,9 @@ impl<'a> Assessor<'a> {
     }
 
     /// A value with its uncertainty at a place.
-    fn read(&mut self, value: Value, doses: &[f64], place: Place) -> Result<Reading, EquilibriumError> {
-        let solution = self.solve(doses, place)?;
-        let sigma = self.sigmas(&[value], doses, place, &solution)?[0];
+    fn read(&mut self, value: Value, place: Place) -> Result<Reading, EquilibriumError> {
+        let solution = self.solve(place)?;
+        let sigma = self.sigmas(&[value], place, &solution)?[0];
         Ok(Reading {
             ph: self.bath.system.proton.map_or(f64::NAN, |proton| solution.ph(proton)),
             temperature_c: self.temperatures[place.0].0,
@@ -265,14 +267,12 @@ impl<'a> Assessor<'a> {
     fn sigmas(
         &self,
         values: &[Value],
-        doses: &[f64],
         (temperature, ph): Place,
         solution: &Equilibrium,
     ) -> Result<Vec<f64>, EquilibriumError> {
         let constants = &self.temperatures[temperature].1;
-        let point = Point { ph, doses };
-        self.bath
-            .sensitivities(constants, point, Solids::Walls, solution, |answers| answers.sigma_log10(values))
+        let ask = |answers: &Sensitivities| answers.sigma_log10(values);
+        self.bath.sensitivities(constants, &self.totals, ph, Solids::Walls, solution, ask)
     }
 }
 

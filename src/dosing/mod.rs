@@ -2,7 +2,6 @@
 //!
 //! This floor asks the bath for equilibria and knows neither sheets nor windows.
 
-mod adjust;
 mod assess;
 mod ledger;
 mod measure;
@@ -11,7 +10,6 @@ mod reason;
 mod search;
 mod verdict;
 
-pub use adjust::{Adjustment, adjustment, ph_after};
 pub use assess::{Assessment, Assessor, CONFIDENCE_95, MetalReading, Reading, WallReading};
 pub use ledger::{Holder, LedgerEntry, ledger};
 pub use measure::{Direction, Measured, ROUNDING_FLAG, measure};

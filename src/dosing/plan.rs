@@ -1,10 +1,9 @@
 //! From doses to additions at the tank: rounded to what can be measured, solved again, split into steps that keep
 //! the pH inside its range, refused where an acid could free a poison.
 
-use super::adjust::{Adjustment, adjustment, ph_after};
 use super::assess::{Assessment, Assessor};
 use super::measure::{Direction, Measured, measure};
-use crate::bath::{Bath, proton_moles_per_gram};
+use crate::bath::{Adjustment, Bath};
 use crate::chemistry::{PROTON, Product};
 use crate::equilibrium::EquilibriumError;
 
@@ -49,6 +48,8 @@ pub struct Plan {
     pub after: Assessment,
     /// Share of an agent in the bath that one portion brings, where it is over the cap of one addition.
     pub over_cap: Option<f64>,
+    /// Why the pH is not brought back by the additions.
+    pub uncorrected: Option<String>,
     /// Why nothing may be printed: an acid into a bath that may hold cyanide, sulfide or hypochlorite.
     pub refused: Option<String>,
 }
@@ -82,8 +83,8 @@ pub fn plan(bath: &Bath, doses: &[f64]) -> Result<Plan, EquilibriumError> {
             });
         }
     }
-    let correction = adjustment(bath, &rounded_doses)?;
-    if let Some(Adjustment { product, dose_g_l, .. }) = &correction {
+    let corrected = bath.corrected(&rounded_doses)?;
+    if let Some(Adjustment { product, dose_g_l }) = &corrected.adjustment {
         let measured = measure(product, *dose_g_l, volume, details, Direction::Down);
         additions.push(Addition { product: product.clone(), measured, exact_g_l: *dose_g_l, agent: None });
     }
@@ -97,7 +98,8 @@ pub fn plan(bath: &Bath, doses: &[f64]) -> Result<Plan, EquilibriumError> {
     let over_cap = (share > addition_cap(bath) * (1.0 + 1e-9)).then_some(share);
     let steps =
         if refused.is_some() { Vec::new() } else { steps(bath, &rounded_doses, &additions, portions)? };
-    Ok(Plan { rounded_doses, additions, steps, before, after, over_cap, refused })
+    let uncorrected = corrected.failure;
+    Ok(Plan { rounded_doses, additions, steps, before, after, over_cap, uncorrected, refused })
 }
 
 fn refusal(bath: &Bath, additions: &[Addition]) -> Option<String> {
@@ -141,7 +143,7 @@ fn portions(bath: &Bath, doses: &[f64], additions: &[Addition]) -> Result<usize,
     if let Some(range) = bath.ph().filter(|_| corrected) {
         while portions < MAX_PORTIONS {
             let share: Vec<f64> = doses.iter().map(|dose| dose / portions as f64).collect();
-            match ph_after(bath, &share, 0.0)? {
+            match bath.ph_after(&share, None)? {
                 Some(ph) if ph < range.low || ph > range.high => portions += 1,
                 _ => break,
             }
@@ -160,7 +162,7 @@ fn steps(
     let volume = bath.project.tank.volume_l;
     let mut steps = Vec::new();
     let mut added = vec![0.0; doses.len()];
-    let mut protons = 0.0;
+    let mut poured = 0.0;
     let mut left: Vec<f64> = additions.iter().map(|addition| addition.measured.rounded_kg).collect();
     for portion in 1..=portions {
         for (index, addition) in additions.iter().enumerate() {
@@ -182,9 +184,12 @@ fn steps(
             left[index] -= kg;
             match addition.agent {
                 Some(agent) => added[agent] += kg * 1000.0 / volume,
-                None => protons += proton_moles_per_gram(&addition.product) * kg * 1000.0 / volume,
+                None => poured += kg * 1000.0 / volume,
             }
-            let ph_after = ph_after(bath, &added, protons)?;
+            let adjusted = additions.iter().find(|addition| addition.agent.is_none());
+            let adjusted =
+                adjusted.map(|addition| Adjustment { product: addition.product.clone(), dose_g_l: poured });
+            let ph_after = bath.ph_after(&added, adjusted.as_ref())?;
             if kg > 0.0 {
                 steps.push(Step { addition: index, measured, portion: (portion, portions), ph_after });
             }

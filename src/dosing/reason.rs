@@ -3,7 +3,7 @@
 use super::assess::{Assessment, Assessor};
 use super::ledger::{LedgerEntry, ledger};
 use super::search::{Hold, Search, search, search_with};
-use crate::bath::{AgentDose, Bath, Point, Range, Solids};
+use crate::bath::{AgentDose, Bath, Range, Solids};
 use crate::chemistry::Role;
 use crate::equilibrium::{EquilibriumError, Solver};
 
@@ -63,8 +63,8 @@ pub fn why_none(bath: &Bath, result: &Search) -> Result<Reason, EquilibriumError
         Some(wall) => {
             let constants = bath.constants_at(wall.worst.temperature_c);
             let ph = bath.ph().map(|_| wall.worst.ph);
-            let point = Point { ph, doses: &doses };
-            let solution = bath.solve_with(&mut Solver::new(), &constants, point, Solids::Walls)?;
+            let totals = bath.corrected(&doses)?.totals;
+            let solution = bath.solve_totals(&mut Solver::new(), &constants, &totals, ph, Solids::Walls)?;
             ledger(bath, &solution, bath.agents[result.agent].active)
         }
         None => Vec::new(),

@@ -2,7 +2,7 @@
 
 use super::evidence::{constants_table, equilibrium_table, margins_table, solids_table};
 use super::model::{Addition, DosingSheet, FileCopy, Finding, Header, Retest, RetestColumn, Target};
-use crate::bath::{Bath, Content, Point, Trust, flags};
+use crate::bath::{Bath, Content, Solids, Trust, flags};
 use crate::chemistry::{Form, PROTON, Product, pretty};
 use crate::dosing::{Assessment, Plan, ROUNDING_FLAG, Step, Verdict, share_of_limit, wall_name};
 use crate::equilibrium::{Equilibrium, EquilibriumError, Solver};
@@ -25,8 +25,8 @@ pub fn content(
     date: Option<String>,
 ) -> Result<DosingSheet, EquilibriumError> {
     let constants = bath.constants_at(bath.project.tank.temperature_c.set);
-    let point = Point { ph: bath.ph_set(), doses: &plan.rounded_doses };
-    let solution = bath.solve(&mut Solver::new(), &constants, point)?;
+    let totals = bath.corrected(&plan.rounded_doses)?.totals;
+    let solution = bath.solve_totals(&mut Solver::new(), &constants, &totals, bath.ph_set(), Solids::Real)?;
     let refused = plan.refused.is_some();
     Ok(DosingSheet {
         header: header(bath, &solution, date),
@@ -338,6 +338,9 @@ fn chemists_number(bath: &Bath, plan: &Plan, verdict: &Verdict) -> String {
             " Each part brings {} of the agent in the bath, more than one addition should: re-test before the next.",
             crate::quantity::percent(share)
         );
+    }
+    if let Some(failure) = &plan.uncorrected {
+        text += &format!(" {failure}.");
     }
     if bath.ph().is_some() {
         text += " pH is meant at bath temperature; a cooled sample reads otherwise.";

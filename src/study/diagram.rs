@@ -1,6 +1,6 @@
 //! Where a metal or an agent is, against pH or against a dose, with the free metals at the same points.
 
-use crate::bath::{Bath, Point, Solids};
+use crate::bath::{Bath, Solids};
 use crate::equilibrium::{EquilibriumError, Solver};
 
 /// What runs along the bottom.
@@ -108,15 +108,18 @@ pub fn diagram(bath: &Bath, axis: Axis, basis: Basis, count: usize) -> Diagram {
     let mut present: Vec<Vec<bool>> = vec![Vec::with_capacity(x.len()); system.solids.len()];
     let mut gaps: Option<(usize, EquilibriumError)> = None;
     let mut solver = Solver::new();
+    let as_dosed = bath.corrected(&doses).map(|corrected| corrected.totals);
     for &value in &x {
-        let ph = match axis {
-            Axis::Ph { .. } => Some(value),
+        let (ph, totals) = match axis {
+            Axis::Ph { .. } => (Some(value), as_dosed.clone()),
             Axis::Dose { agent, .. } => {
                 doses[agent] = value;
-                bath.ph_set()
+                (bath.ph_set(), bath.corrected(&doses).map(|corrected| corrected.totals))
             }
         };
-        match bath.solve_with(&mut solver, &constants, Point { ph, doses: &doses }, Solids::Real) {
+        let solved =
+            totals.and_then(|totals| bath.solve_totals(&mut solver, &constants, &totals, ph, Solids::Real));
+        match solved {
             Ok(solution) => {
                 let total = solution.totals[basis.0];
                 let dissolved = species.iter().map(|&(j, n)| n * solution.c[j] / total);

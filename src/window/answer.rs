@@ -1,10 +1,8 @@
 //! What the worker is asked and what it answers.
 
-use crate::bath::{Bath, BathError, Flag, Point, Project, flags};
+use crate::bath::{Adjustment, Bath, BathError, Flag, Project, Solids, flags};
 use crate::chemistry::ComponentKind;
-use crate::dosing::{
-    Adjustment, Assessment, Assessor, LedgerEntry, Search, Verdict, adjustment, ledger, plan, search, verdict,
-};
+use crate::dosing::{Assessment, Assessor, LedgerEntry, Search, Verdict, ledger, plan, search, verdict};
 use crate::equilibrium::{Equilibrium, Solver};
 use crate::sheet::{LaidOut, Paper, content, lay_out};
 use crate::study::{Axis, Basis, Diagram, diagram};
@@ -102,7 +100,9 @@ pub fn quick(request: &Request) -> Result<Quick, BathError> {
     let doses = bath.doses();
     let set = bath.project.tank.temperature_c.set;
     let constants = bath.constants_at(set);
-    let solution = bath.solve(&mut Solver::new(), &constants, Point { ph: bath.ph_set(), doses: &doses })?;
+    let corrected = bath.corrected(&doses)?;
+    let solution =
+        bath.solve_totals(&mut Solver::new(), &constants, &corrected.totals, bath.ph_set(), Solids::Real)?;
     let assessment = Assessor::new(&bath).assess(&doses)?;
     let agents = (0..bath.present.len()).filter(|&i| {
         bath.component(i).kind == ComponentKind::Agent
@@ -110,7 +110,7 @@ pub fn quick(request: &Request) -> Result<Quick, BathError> {
             && is_dosed_or_limited(&bath, i)
     });
     let ledgers = agents.map(|i| (i, ledger(&bath, &solution, i))).collect();
-    let adjustment = adjustment(&bath, &doses)?;
+    let adjustment = corrected.adjustment;
     let flags = flags(&bath, &solution, set);
     let diagram = diagram(&bath, axis(&bath, request.view.across), basis(&bath, &request.view), LIVE_POINTS);
     Ok(Quick {
