@@ -3,9 +3,9 @@
 use super::table::Table;
 use super::{CommandError, Outcome, print};
 use crate::bath::{Bath, Rule, Solids, flags};
-use crate::chemistry::pretty;
-use crate::equilibrium::{Equilibrium, Solver};
-use crate::quantity::{fixed, p_value, significant};
+use crate::chemistry::{Potentials, pretty};
+use crate::equilibrium::{Equilibrium, Solver, nernst};
+use crate::quantity::{fixed, kelvin, p_value, significant};
 use serde_json::{Map, Value, json};
 use std::io::Write;
 
@@ -39,6 +39,13 @@ fn finite(value: f64) -> Value {
     if value.is_finite() { json!(value) } else { Value::Null }
 }
 
+/// Potential of a metal in this bath, V against the standard hydrogen electrode.
+fn potential(bath: &Bath, solution: &Equilibrium, metal: usize) -> Option<f64> {
+    let couple = Potentials::built_in().couple(&bath.system.components[metal])?;
+    let temperature = kelvin(bath.project.tank.temperature_c.set);
+    solution.ln_a[metal].is_finite().then(|| nernst(couple, solution.ln_a[metal], temperature))
+}
+
 /// Rule of a solid in words.
 fn rule_word(rule: Rule) -> &'static str {
     match rule {
@@ -54,7 +61,11 @@ pub fn json_object(bath: &Bath, solution: &Equilibrium, doses: &[f64]) -> Map<St
     let mut free = Map::new();
     for metal in bath.metals() {
         let value = solution.free(metal);
-        let entry = json!({ "mol_per_L": finite(value), "pM": finite(-solution.ln_c[metal] / crate::equilibrium::LN_10) });
+        let entry = json!({
+            "mol_per_L": finite(value),
+            "pM": finite(-solution.ln_c[metal] / crate::equilibrium::LN_10),
+            "E_SHE_V": potential(bath, solution, metal).map_or(Value::Null, finite),
+        });
         free.insert(bath.system.components[metal].clone(), entry);
     }
     let species = bath.system.species.iter().zip(&solution.c);
@@ -109,14 +120,23 @@ pub fn json_object(bath: &Bath, solution: &Equilibrium, doses: &[f64]) -> Map<St
 fn text(bath: &Bath, solution: &Equilibrium, doses: &[f64]) -> String {
     let mut text = heading(bath, solution, doses);
     text += "\nFree metals\n";
-    let mut table = Table::new(&["metal", "mol/L", "pM", "mg/L"]);
+    let mut table = Table::new(&["metal", "mol/L", "pM", "mg/L", "E of the metal, V (SHE)", "V (Ag/AgCl)"]);
     for metal in bath.metals().filter(|&metal| solution.free(metal) > 0.0) {
         let value = solution.free(metal);
         let mg = bath
             .component(metal)
             .molar_mass()
             .map_or("–".to_owned(), |mass| significant(value * mass * 1e3, 2));
-        table.row([pretty(&bath.system.components[metal]), significant(value, 2), p_value(value), mg]);
+        let potential = potential(bath, solution, metal);
+        let against = |reference: f64| potential.map_or("–".to_owned(), |e| fixed(e - reference, 2));
+        table.row([
+            pretty(&bath.system.components[metal]),
+            significant(value, 2),
+            p_value(value),
+            mg,
+            against(0.0),
+            against(Potentials::built_in().references.first().map_or(0.0, |reference| reference.e_v)),
+        ]);
     }
     text += &table.text();
     text += "\nSpecies, largest first\n";

@@ -5,10 +5,12 @@
 
 mod amount;
 mod print;
+mod spreadsheet;
 mod unit;
 
 pub use amount::{Amount, AmountError, Level, LevelError};
 pub use print::{fixed, grouped, p_value, percent, plain, scientific, significant};
+pub use spreadsheet::spreadsheet_text;
 pub use unit::{Dimension, Unit};
 
 /// 0 °C in kelvin.

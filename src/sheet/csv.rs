@@ -5,6 +5,7 @@
 
 use super::error::SheetError;
 use super::model::{Addition, DosingSheet, FileCopy, Header};
+use crate::quantity::spreadsheet_text as neutral;
 
 /// The sheet as CSV text (UTF-8, no byte order mark, comma separated).
 pub fn to_csv(sheet: &DosingSheet) -> Result<String, SheetError> {
@@ -127,33 +128,6 @@ fn file_copy(out: &mut Rows, file: &FileCopy) -> Result<(), SheetError> {
     }
     list(out, "flag", &file.flags)?;
     list(out, "certificate", &file.certificate)
-}
-
-/// The cell on one line, and unable to become a formula.
-fn neutral(cell: &str) -> String {
-    let line = cell.replace(|c: char| c.is_control(), " ");
-    if starts_like_a_formula(cell) && !is_plain_number(cell) { format!("'{line}") } else { line }
-}
-
-/// Whether a spreadsheet may take the cell for a formula. Full-width signs count: some versions accept them.
-fn starts_like_a_formula(cell: &str) -> bool {
-    let sign = |c: char| matches!(c, '=' | '+' | '-' | '@' | '＝' | '＋' | '－' | '＠');
-    cell.starts_with(['\t', '\r', '\n']) || cell.trim_start().starts_with(sign)
-}
-
-/// `-3.2`, `+1,5`, `-4e-11`: a sign, digits, one decimal mark, perhaps an exponent.
-fn is_plain_number(cell: &str) -> bool {
-    let unsigned = |text: &str| text.strip_prefix(['+', '-']).unwrap_or(text).to_owned();
-    let (number, exponent) = match cell.split_once(['e', 'E']) {
-        Some((number, exponent)) => (unsigned(number), Some(unsigned(exponent))),
-        None => (unsigned(cell), None),
-    };
-    let digits = |text: &str| !text.is_empty() && text.chars().all(|c| c.is_ascii_digit());
-    let number_ok = match number.split_once(['.', ',']) {
-        Some((whole, fraction)) => digits(whole) && digits(fraction),
-        None => digits(&number),
-    };
-    number_ok && exponent.is_none_or(|e| digits(&e))
 }
 
 #[cfg(test)]

@@ -6,6 +6,7 @@
 
 use super::{Axis, Diagram};
 use crate::bath::Bath;
+use crate::quantity::spreadsheet_text;
 
 /// Figures that a share or pM is written with.
 const FIGURES: usize = 6;
@@ -17,9 +18,11 @@ pub fn to_csv(bath: &Bath, diagram: &Diagram) -> String {
         Axis::Ph { .. } => "pH",
         Axis::Dose { .. } => "dose_g_per_L",
     };
-    let shares = diagram.series.iter().map(|series| text(&series.token));
-    let free =
-        diagram.free.iter().map(|line| text(&format!("pM {}", bath.system.components[line.component])));
+    let shares = diagram.series.iter().map(|series| spreadsheet_text(&series.token));
+    let free = diagram
+        .free
+        .iter()
+        .map(|line| spreadsheet_text(&format!("pM {}", bath.system.components[line.component])));
     let mut write = |row: Vec<String>| {
         if let Err(error) = writer.write_record(&row) {
             log::error!("a row of the table could not be written: {error}");
@@ -51,13 +54,6 @@ fn number(value: f64) -> String {
         Ok(rounded) if rounded.is_finite() => format!("{rounded:e}"),
         _ => String::new(),
     }
-}
-
-/// Text for a cell: one line, and never a formula.
-fn text(cell: &str) -> String {
-    let line = cell.replace(|c: char| c.is_control(), " ");
-    let formula = |c: char| matches!(c, '=' | '+' | '-' | '@' | '＝' | '＋' | '－' | '＠');
-    if line.trim_start().starts_with(formula) { format!("'{line}") } else { line }
 }
 
 #[cfg(test)]
@@ -117,7 +113,10 @@ mod tests {
         assert_eq!(rows[0][1], "'=HYPERLINK(\"x\"),1 ");
         assert_eq!(rows[0][2], "'@evil");
         assert!(rows[1].contains(&"-0.3".to_owned()));
-        assert_eq!((text("Cu+2"), text(" -2")), ("Cu+2".to_owned(), "' -2".to_owned()));
+        assert_eq!(
+            (spreadsheet_text("Cu+2"), spreadsheet_text(" -2")),
+            ("Cu+2".to_owned(), "' -2".to_owned())
+        );
     }
 
     #[test]
