@@ -11,6 +11,8 @@ use super::reduced::Sparse;
 const TOLERANCE: f64 = 1e-14;
 /// Residual that still counts as converged when rounding stops the iteration.
 const ACCEPTED: f64 = 1e-11;
+/// Smallest pivot of the scaled Hessian at which a step is mostly rounding.
+const HOPELESS: f64 = 1e-10;
 const MAX_STEPS: usize = 400;
 const MAX_SWEEPS: usize = 60;
 
@@ -64,8 +66,9 @@ impl Minimiser {
         }
     }
 
-    /// Finds the minimum from the start `y`, which is overwritten.
-    pub fn minimise(&mut self, sparse: &Sparse, k: &[f64], y: &mut [f64]) -> Outcome {
+    /// Finds the minimum from the start `y`, which is overwritten. Without `patience` it gives up, unconverged, as soon
+    /// as two unknowns are one to rounding: the caller can then choose better ones.
+    pub fn minimise(&mut self, sparse: &Sparse, k: &[f64], y: &mut [f64], patience: bool) -> Outcome {
         self.resize(sparse);
         self.find_caps(sparse);
         let mut outcome =
@@ -82,6 +85,9 @@ impl Minimiser {
             outcome.steps += 1;
             self.build_hessian(sparse);
             outcome.smallest_pivot = self.factorise(sparse.columns);
+            if !patience && outcome.smallest_pivot < HOPELESS && outcome.residual > ACCEPTED {
+                break;
+            }
             if !self.search(sparse, k, y) {
                 break;
             }
@@ -106,7 +112,8 @@ impl Minimiser {
     fn sweep(&mut self, sparse: &Sparse, k: &[f64], y: &mut [f64]) -> f64 {
         let mut largest: f64 = 0.0;
         for i in 0..sparse.columns {
-            let (mut plus, mut minus, mut curvature) = (0.0, 0.0, 0.0);
+            let (mut plus, mut minus) = (0.0, 0.0);
+            let (mut plus_slope, mut minus_slope) = (0.0, 0.0);
             let (mut highest, mut order) = (f64::NEG_INFINITY, 1.0);
             for j in 0..sparse.rows() {
                 let (columns, values) = sparse.row(j);
@@ -117,22 +124,23 @@ impl Minimiser {
                 }
                 let part = values[at] * exponent.min(700.0).exp();
                 if part > 0.0 {
-                    plus += part
+                    plus += part;
+                    plus_slope += values[at] * part;
                 } else {
-                    minus -= part
+                    minus -= part;
+                    minus_slope += values[at] * part;
                 }
-                curvature += values[at] * part;
             }
             let total = sparse.totals[i];
             let (above, below) = (plus + (-total).max(0.0), minus + total.max(0.0));
-            let weight = plus.max(minus);
             if plus == 0.0 && total > 0.0 && highest.is_finite() {
                 // All its species are below the smallest number: lift the largest to the total.
                 let step = (total.ln() - highest) / order;
                 y[i] += step;
                 largest = largest.max(step.abs());
-            } else if above > 0.0 && below > 0.0 && curvature > 0.0 {
-                let step = (weight * (below / above).ln() / curvature).clamp(-200.0, 200.0);
+            } else if above > 0.0 && below > 0.0 && plus_slope + minus_slope > 0.0 {
+                let slope = plus_slope / above + minus_slope / below;
+                let step = ((below / above).ln() / slope).clamp(-200.0, 200.0);
                 y[i] += step;
                 largest = largest.max(step.abs());
             }
@@ -357,7 +365,7 @@ mod tests {
         let mut y = [(0.01f64).ln(), (0.02f64).ln()];
         let mut minimiser = Minimiser::default();
         minimiser.approach(&sparse, &k, &mut y);
-        let outcome = minimiser.minimise(&sparse, &k, &mut y);
+        let outcome = minimiser.minimise(&sparse, &k, &mut y, true);
         assert!(outcome.converged, "{outcome:?}");
         assert!((y[0] - (0.01 / (0.01 * 1e18f64)).ln()).abs() < 1e-10, "{}", y[0]);
     }

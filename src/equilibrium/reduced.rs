@@ -89,11 +89,6 @@ impl Reduced {
         self.live.retain(|&live| live != column);
     }
 
-    /// Whether a row is one unknown and nothing else.
-    pub fn is_unit(&self, row: usize, column: usize) -> bool {
-        self.live.iter().all(|&i| (self.get(row, i) - if i == column { 1.0 } else { 0.0 }).abs() < 1e-12)
-    }
-
     /// The live column with the largest weighted entry of a row, `None` when the row is fixed already.
     pub fn largest(&self, row: usize, weight: impl Fn(usize) -> f64) -> Option<usize> {
         let entry = |&column: &usize| self.get(row, column).abs() * weight(column);

@@ -15,7 +15,7 @@ const SUPERSATURATED: f64 = 1e-11;
 /// Smallest pivot of the scaled Hessian below which the unknowns are changed to dominant species.
 const ILL_CONDITIONED: f64 = 1e-4;
 /// Times that the unknowns may be changed on the way to one solution.
-const MAX_TURNS: usize = 6;
+const MAX_TURNS: usize = 25;
 const MAX_EXCHANGES: usize = 300;
 
 /// The problem at fixed activity coefficients.
@@ -45,8 +45,10 @@ pub(super) struct Stage {
     pub k: Vec<f64>,
     /// One value for each live column.
     pub y: Vec<f64>,
-    /// Whether the unknowns are species rather than components.
-    turned: bool,
+    /// The balances before their unknowns were turned into species, and the species that are the unknowns now; none
+    /// while they are the components.
+    origin: Reduced,
+    unknowns: Vec<usize>,
 }
 
 impl Stage {
@@ -66,7 +68,8 @@ impl Stage {
         }
         let y = reduced.live.iter().map(|&column| x[column]).collect();
         let sparse = reduced.sparse();
-        Self { active: taken, reduced, sparse, k: Vec::new(), y, turned: false }
+        let origin = reduced.clone();
+        Self { active: taken, reduced, sparse, k: Vec::new(), y, origin, unknowns: Vec::new() }
     }
 
     fn refresh(&mut self, fixed: &Fixed) {
@@ -78,52 +81,59 @@ impl Stage {
     pub fn minimise(&mut self, fixed: &Fixed, minimiser: &mut Minimiser) -> Outcome {
         self.refresh(fixed);
         minimiser.approach(&self.sparse, &self.k, &mut self.y);
-        let mut outcome = minimiser.minimise(&self.sparse, &self.k, &mut self.y);
-        for _ in 0..MAX_TURNS {
+        let mut outcome = minimiser.minimise(&self.sparse, &self.k, &mut self.y, false);
+        for turn in 0..=MAX_TURNS {
             // Unknowns that were chosen far from the solution are chosen again until they suit it.
             let well_posed = outcome.converged && outcome.smallest_pivot > ILL_CONDITIONED;
-            if (well_posed && !self.turned) || !self.turn(&minimiser.c) {
+            if well_posed && self.unknowns.is_empty() {
                 break;
             }
-            self.turned = true;
+            let better = turn < MAX_TURNS && self.turn(fixed, &minimiser.c);
+            if !better && outcome.converged {
+                break;
+            }
             self.refresh(fixed);
             let steps = outcome.steps;
-            outcome = minimiser.minimise(&self.sparse, &self.k, &mut self.y);
+            outcome = minimiser.minimise(&self.sparse, &self.k, &mut self.y, !better);
             outcome.steps += steps;
+            if !better {
+                break;
+            }
         }
         outcome
     }
 
     /// Makes the most concentrated independent species the unknowns. Returns false when they are already.
-    fn turn(&mut self, c: &[f64]) -> bool {
+    ///
+    /// Always from the components anew: totals that were turned twice would carry the rounding of both turns.
+    fn turn(&mut self, fixed: &Fixed, c: &[f64]) -> bool {
         let mut order: Vec<usize> = (0..self.reduced.species_count()).collect();
         order.sort_by(|&a, &b| c[b].total_cmp(&c[a]));
-        let mut assigned = vec![false; self.reduced.live.iter().max().map_or(0, |max| max + 1)];
-        let mut left = self.reduced.live.len();
-        let mut turned = false;
+        let mut turned = self.origin.clone();
+        let mut y: Vec<f64> = turned.live.iter().map(|&column| self.reduced.value(column, &self.y)).collect();
+        let mut unknowns = vec![usize::MAX; y.len()];
         for species in order {
-            if left == 0 {
+            // It stands for its scarcest component, whose balance would drown in that of a plentiful one.
+            let weight = |column: usize| match turned.live.iter().position(|&live| live == column) {
+                Some(place) if unknowns[place] == usize::MAX => fixed.column_weight[column],
+                _ => 0.0,
+            };
+            let Some(column) = turned.largest(species, weight) else { continue };
+            let Some(place) = turned.live.iter().position(|&live| live == column) else { continue };
+            unknowns[place] = species;
+            let z = turned.value(species, &y) - turned.offset[species];
+            turned.pivot(column, species);
+            y[place] = z;
+            if unknowns.iter().all(|&species| species != usize::MAX) {
                 break;
             }
-            let Some(column) =
-                self.reduced.largest(species, |column| if assigned[column] { 0.0 } else { 1.0 })
-            else {
-                continue;
-            };
-            assigned[column] = true;
-            left -= 1;
-            if self.reduced.is_unit(species, column) {
-                continue;
-            }
-            let z = self.reduced.value(species, &self.y) - self.reduced.offset[species];
-            self.reduced.pivot(column, species);
-            if let Some(place) = self.reduced.live.iter().position(|&live| live == column) {
-                self.y[place] = z;
-            }
-            turned = true;
         }
+        if unknowns == self.unknowns {
+            return false;
+        }
+        (self.reduced, self.y, self.unknowns) = (turned, y, unknowns);
         self.sparse = self.reduced.sparse();
-        turned
+        true
     }
 
     /// ln a over all columns of the base problem; bare components are the first species rows.
@@ -139,12 +149,15 @@ impl Stage {
         if size == 0 {
             return Vec::new();
         }
-        let matrix =
-            DMatrix::from_fn(size, size, |r, s| fixed.solid_rows[self.active[s].0][self.active[r].1]);
+        // Each balance in units of its own size, so that no pivot mixes a scarce component with a plentiful one.
+        let weight = |r: usize| fixed.column_weight[self.active[r].1];
+        let matrix = DMatrix::from_fn(size, size, |r, s| {
+            weight(r) * fixed.solid_rows[self.active[s].0][self.active[r].1]
+        });
         let missing = DVector::from_fn(size, |r, _| {
             let column = self.active[r].1;
             let bound: f64 = (0..fixed.base.species_count()).map(|j| fixed.base.get(j, column) * c[j]).sum();
-            fixed.base.get(fixed.base.totals_row(), column) - bound
+            weight(r) * (fixed.base.get(fixed.base.totals_row(), column) - bound)
         });
         matrix.lu().solve(&missing).map_or_else(|| vec![0.0; size], |n| n.iter().copied().collect())
     }
