@@ -137,7 +137,7 @@ fn compare(reference: &Reference) -> Vec<String> {
     let tolerance = 1e-9f64.max(4e-16 * condition(&reference.note));
     let mut wrong = Vec::new();
     let mut check = |what: String, gap: f64, tolerance: f64| {
-        if !(gap <= tolerance) {
+        if gap.is_nan() || gap > tolerance {
             wrong.push(format!("{}: {what} off by {gap:.1e}, {tolerance:.1e} allowed", reference.name));
         }
     };

@@ -201,7 +201,7 @@ mod tests {
     fn after_dose_and_correction_the_tank_reads_its_set_ph() {
         for alkali in ["koh-45", "naoh-50", "k2co3", "ammonia-25"] {
             let bath = copper_strike(alkali);
-            let doses = vec![10.0, 0.0];
+            let doses = [10.0, 0.0];
             let corrected = bath.corrected(&doses[..bath.agents.len()]).unwrap();
             let adjustment = corrected.adjustment.expect("an acid agent calls for alkali");
             assert_eq!(adjustment.product.id, alkali);

@@ -115,10 +115,10 @@ impl Minimiser {
             let (mut plus, mut minus) = (0.0, 0.0);
             let (mut plus_slope, mut minus_slope) = (0.0, 0.0);
             let (mut highest, mut order) = (f64::NEG_INFINITY, 1.0);
-            for j in 0..sparse.rows() {
+            for (j, k) in k.iter().enumerate() {
                 let (columns, values) = sparse.row(j);
                 let Some(at) = columns.iter().position(|&column| column as usize == i) else { continue };
-                let exponent = k[j] + sparse.dot(j, y);
+                let exponent = k + sparse.dot(j, y);
                 if values[at] > 0.0 && exponent > highest {
                     (highest, order) = (exponent, values[at]);
                 }
@@ -256,22 +256,17 @@ impl Minimiser {
 
     /// Solves H x = b with the factor at hand; `b` becomes x.
     pub fn solve(&self, m: usize, b: &mut [f64]) {
+        let row = |i: usize| &self.hessian[i * m..i * m + i + 1];
         for i in 0..m {
-            let mut value = b[i] * self.scale[i];
-            for l in 0..i {
-                value -= self.hessian[i * m + l] * b[l];
-            }
-            b[i] = value / self.hessian[i * m + i];
+            let known: f64 = row(i).iter().zip(&b[..i]).map(|(factor, b)| factor * b).sum();
+            b[i] = (b[i] * self.scale[i] - known) / row(i)[i];
         }
         for i in (0..m).rev() {
-            let mut value = b[i];
-            for l in i + 1..m {
-                value -= self.hessian[l * m + i] * b[l];
-            }
-            b[i] = value / self.hessian[i * m + i];
+            let known: f64 = (i + 1..m).map(|l| self.hessian[l * m + i] * b[l]).sum();
+            b[i] = (b[i] - known) / row(i)[i];
         }
-        for i in 0..m {
-            b[i] *= self.scale[i];
+        for (b, scale) in b.iter_mut().zip(&self.scale) {
+            *b *= scale;
         }
     }
 
@@ -307,13 +302,13 @@ impl Minimiser {
                 break;
             }
         }
-        if !(slope < 0.0) {
+        if slope.is_nan() || slope >= 0.0 {
             return false;
         }
         let mut length = self.longest_step(sparse);
         for _ in 0..80 {
-            for i in 0..m {
-                self.trial[i] = y[i] + length * self.step[i];
+            for ((trial, y), step) in self.trial.iter_mut().zip(&*y).zip(&self.step) {
+                *trial = y + length * step;
             }
             let trial = std::mem::take(&mut self.trial);
             self.evaluate(sparse, k, &trial);
