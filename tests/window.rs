@@ -185,8 +185,8 @@ fn an_empty_bath_says_what_to_do_first() {
 #[test]
 fn every_demo_bath_opens_and_is_solved() {
     let mut harness = lab();
-    for number in 0..DEMOS.len() {
+    for (number, demo) in DEMOS.iter().enumerate() {
         command(&mut harness, Command::OpenDemo(number));
-        assert!(harness.state().verdict_state().is_some(), "{}", DEMOS[number].file);
+        assert!(harness.state().verdict_state().is_some(), "{}", demo.file);
     }
 }

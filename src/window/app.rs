@@ -383,9 +383,9 @@ impl eframe::App for App {
     }
 }
 
-/// A dose rounded up to 0.01 g/L, so that the slider shows what was found.
+/// A dose rounded up in its fourth decimal: it still holds, and rounds to the same amount on the scale.
 fn round_up(dose: f64) -> f64 {
-    (dose * 100.0 - 1e-9).ceil() / 100.0
+    (dose * 1e4 - 1e-9).ceil() / 1e4
 }
 
 /// A dose as the window shows it.
