@@ -212,8 +212,8 @@ fn shares(app: &App, quick: &Quick, ui: &mut Ui, height: f32, link: Id) {
         });
     let transform = shown.transform;
     let frame = shown.response.rect;
-    shade_solids(ui, quick, &transform, frame, true);
-    name_lines(ui, diagram, &transform, frame);
+    let taken = shade_solids(ui, quick, &transform, frame, true);
+    name_lines(ui, diagram, &transform, frame, taken);
 }
 
 /// What stands at the pointer: every species at that x.
@@ -246,9 +246,11 @@ fn hover(diagram: &Diagram, quick: &Quick, position: &HoverPosition<'_>) -> Opti
     Some(text)
 }
 
-fn shade_solids(ui: &Ui, quick: &Quick, transform: &PlotTransform, frame: Rect, named: bool) {
+/// Hatches where solids are present, names them at the top, and returns where the names stand.
+fn shade_solids(ui: &Ui, quick: &Quick, transform: &PlotTransform, frame: Rect, named: bool) -> Vec<Rect> {
     let p = palette(ui);
     let painter = ui.painter().with_clip_rect(frame);
+    let mut taken = Vec::new();
     let mut row = 0.0;
     for region in &quick.diagram.solids {
         let left = transform.position_from_point(&PlotPoint::new(region.from, 0.0)).x;
@@ -260,18 +262,20 @@ fn shade_solids(ui: &Ui, quick: &Quick, transform: &PlotTransform, frame: Rect, 
             let galley = painter.layout_no_wrap(text, Text::Axis.font(), p.ink2);
             let x = (left + 6.0).min(frame.right() - galley.size().x - 6.0).max(frame.left() + 4.0);
             let at = pos2(x, frame.top() + 5.0 + row);
-            painter.rect_filled(Rect::from_min_size(at, galley.size()).expand(2.0), 2.0, p.panel);
+            let galley_size = galley.size();
+            painter.rect_filled(Rect::from_min_size(at, galley_size).expand(2.0), 2.0, p.panel);
             painter.galley(at, galley, p.ink2);
             row += 17.0;
+            taken.push(Rect::from_min_size(at, galley_size).expand(3.0));
         }
     }
+    taken
 }
 
 /// Writes each name at its line, where the line is highest and nothing is written yet.
-fn name_lines(ui: &Ui, diagram: &Diagram, transform: &PlotTransform, frame: Rect) {
+fn name_lines(ui: &Ui, diagram: &Diagram, transform: &PlotTransform, frame: Rect, mut taken: Vec<Rect>) {
     let p = palette(ui);
     let painter = ui.painter().with_clip_rect(frame);
-    let mut taken: Vec<Rect> = Vec::new();
     for (i, series) in diagram.series.iter().enumerate().filter(|(_, series)| series.peak >= NAMED_PEAK) {
         let galley =
             painter.layout_no_wrap(pretty(&series.token), Text::SmallStrong.font(), Series::new(p, i).colour);

@@ -3,6 +3,7 @@
 use super::app::{App, shown};
 use super::command::Command;
 use super::frame::state_of;
+use super::tank::name_on_the_left;
 use super::theme::{GAP, INSET, State, Text, palette};
 use super::widget::{DoseRail, Gauge, NumberField, Zone, follow_field, gauge_legend, verdict_panel};
 use crate::bath::{AgentDose, Wall};
@@ -15,6 +16,9 @@ use eframe::egui::{Align, Button, ComboBox, Frame, Layout, Margin, Panel, RichTe
 
 /// Largest slider range offered when an agent is added, g/L.
 const DEFAULT_MAX_G_L: f64 = 50.0;
+
+/// Windows under this height, points, get lower gauges.
+const LOW_WINDOW: f32 = 850.0;
 
 /// Draws the panel.
 pub fn show(app: &mut App, ui: &mut Ui) {
@@ -67,7 +71,6 @@ fn heading(app: &mut App, ui: &mut Ui) {
 
 /// One agent; true when it is to be removed.
 fn agent_row(app: &mut App, ui: &mut Ui, agent: usize) -> bool {
-    let p = palette(ui);
     let mut remove = false;
     let resolved =
         app.quick.as_ref().and_then(|quick| quick.bath.agents.get(agent)).map(|agent| agent.product.clone());
@@ -80,23 +83,15 @@ fn agent_row(app: &mut App, ui: &mut Ui, agent: usize) -> bool {
     let id = app.document.project.agents[agent].product.clone();
     let mut edited: Option<(f64, bool)> = None;
     ui.horizontal(|ui| {
-        let name = product.as_ref().map_or(id.as_str(), |product| product.name.as_str());
-        ui.label(Text::Strong.rich(name, p.ink)).on_hover_ui(|ui| {
-            if let Some(product) = &product {
-                ui.label(format!("{} % {}", plain(product.assay_percent.typical, 2), product.assay_basis));
-                ui.label(&product.caution);
-            }
-        });
         ui.with_layout(Layout::right_to_left(Align::Center), |ui| {
-            if ui.small_button("×").on_hover_text("Remove this agent").clicked() {
-                remove = true;
-            }
+            remove = ui.small_button("×").on_hover_text("Remove this agent").clicked();
             let field =
                 NumberField::new("dose in g/L").unit("g/L").range(0.0..=max).decimals(2).step(0.1).strong();
             let edit = field.show(ui, dose);
             if let Some(value) = edit.value {
                 edited = Some((value, true));
             }
+            name_on_the_left(ui, product.as_ref().map_or(id.as_str(), |product| product.name.as_str()));
         });
     });
     let search = app
@@ -152,7 +147,7 @@ fn amounts(ui: &mut Ui, measured: &Measured, rounding: &str, cost: Option<(f64, 
     ui.horizontal(|ui| {
         ui.label(Text::Small.rich("measure out", p.ink2));
         ui.label(Text::Strong.rich(&measured.amount, p.ink));
-        ui.label(Text::Small.rich(format!("{rounding} · {}", measured.how), p.ink2));
+        ui.label(Text::Small.rich(rounding, p.ink2)).on_hover_text(&measured.how);
     });
 }
 
@@ -248,6 +243,11 @@ fn gauges(app: &App, ui: &mut Ui) {
     gauge_legend(ui, 95);
 }
 
+/// Height of the well: lower on a low window, so that gauge and verdict are both in sight.
+fn gauge_height(ui: &Ui) -> f32 {
+    if ui.ctx().content_rect().height() < LOW_WINDOW { 120.0 } else { Gauge::default().height }
+}
+
 fn gauge(app: &App, ui: &mut Ui, metal: &MetalReading, stale: bool) {
     let Some(quick) = &app.quick else { return };
     let limit = &quick.bath.limits[metal.limit];
@@ -291,12 +291,14 @@ fn gauge(app: &App, ui: &mut Ui, metal: &MetalReading, stale: bool) {
         state,
         lines: &lines,
         stale,
+        height: gauge_height(ui),
         ..Gauge::default()
     }
     .show(ui);
 }
 
-fn verdict(app: &App, ui: &mut Ui) {
+/// The state of the doses in one sentence.
+pub fn verdict(app: &App, ui: &mut Ui) {
     if let Some(error) = &app.error {
         verdict_panel(
             ui,

@@ -19,6 +19,9 @@ pub fn state_of(hold: Hold) -> State {
     }
 }
 
+/// Width from which the file's name stands in the menu row, points.
+const FILE_NAME_FROM: f32 = 960.0;
+
 /// Menu and page tabs.
 pub fn top(app: &mut App, ui: &mut Ui) {
     let p = palette(ui);
@@ -31,7 +34,10 @@ pub fn top(app: &mut App, ui: &mut Ui) {
                 ui.add_space(8.0);
                 let dirty = if app.document.is_dirty() { "edited, not saved" } else { "saved" };
                 let file = format!("{} · {dirty}", app.document.file_name());
-                ui.label(Text::Small.rich(file, p.ink2));
+                // On a narrow window the bath's name needs the room.
+                if ui.ctx().content_rect().width() >= FILE_NAME_FROM {
+                    ui.label(Text::Small.rich(file, p.ink2));
+                }
                 ui.with_layout(Layout::centered_and_justified(egui::Direction::LeftToRight), |ui| {
                     let project = app.project();
                     let place =

@@ -6,7 +6,7 @@ use super::widget::{Edit, Evidence, NumberField, RangeBar, Span, evidence};
 use crate::bath::{Content, Limit, Ph, Project, Range, Trust};
 use crate::chemistry::ComponentKind;
 use crate::quantity::{Amount, Dimension, LITRES_PER_US_GALLON, Level, Unit, grouped, plain};
-use eframe::egui::{Align, ComboBox, Layout, TextEdit, Ui};
+use eframe::egui::{Align, ComboBox, Label, Layout, TextEdit, Ui};
 
 /// Volume at which the picture of the tank is full, relative to today's.
 const FULL: f64 = 1.15;
@@ -74,7 +74,7 @@ fn ph(app: &mut App, ui: &mut Ui, done: &mut Option<String>) {
     let tank = &mut app.document.project.tank;
     let mut held = tank.ph.range().is_some();
     if let Some(mut range) = tank.ph.range() {
-        range_row(ui, "pH at 25 °C", "", 0.05, (-1.0, 15.0), &mut range, done);
+        range_row(ui, "pH at bath temperature", "", 0.05, (-1.0, 15.0), &mut range, done);
         tank.ph = Ph::from(range);
     } else {
         ui.separator();
@@ -235,23 +235,13 @@ fn contents(app: &mut App, ui: &mut Ui, done: &mut Option<String>) {
 
 /// One line; true when it is to be removed.
 fn content(content: &mut Content, naming: &Naming, ui: &mut Ui, done: &mut Option<String>) -> bool {
-    let p = palette(ui);
     let mut remove = false;
     ui.separator();
     ui.horizontal(|ui| {
         ui.with_layout(Layout::right_to_left(Align::Center), |ui| {
-            if ui.small_button("×").on_hover_text("Remove this constituent").clicked() {
-                remove = true;
-            }
-            unit_box(content, naming, ui, done);
-            let field = NumberField::new("amount").range(0.0..=1e6).step(0.1).show(ui, content.amount.value);
-            take(field, &mut content.amount.value).then_name(done, |value| {
-                format!("{} to {} {}", naming.name, plain(value, 4), content.amount.unit.symbol())
-            });
-            // The name takes what is left, from the left edge.
-            ui.with_layout(Layout::left_to_right(Align::Center), |ui| {
-                ui.add(eframe::egui::Label::new(&naming.name).truncate()).on_hover_text(&naming.name);
-            });
+            let remove_it = format!("Remove {}", naming.name);
+            remove = ui.small_button("×").on_hover_text(remove_it).clicked();
+            name_on_the_left(ui, &naming.name);
         });
     });
     let (mark, word) = match content.trust {
@@ -261,18 +251,31 @@ fn content(content: &mut Content, naming: &Naming, ui: &mut Ui, done: &mut Optio
         Trust::Assumed => (Evidence::Assumed, Trust::Today),
     };
     ui.horizontal(|ui| {
-        let response = evidence(ui, mark, &content.note);
-        if response
-            .interact(eframe::egui::Sense::click())
-            .on_hover_text("What this number rests on; click to change")
-            .clicked()
-        {
-            content.trust = word;
-            *done = Some(format!("{} {}", naming.name, word.word()));
-        }
-        ui.label(Text::Small.rich("", p.ink2));
+        ui.with_layout(Layout::right_to_left(Align::Center), |ui| {
+            unit_box(content, naming, ui, done);
+            let field = NumberField::new("amount").range(0.0..=1e6).step(0.1).show(ui, content.amount.value);
+            take(field, &mut content.amount.value).then_name(done, |value| {
+                format!("{} to {} {}", naming.name, plain(value, 4), content.amount.unit.symbol())
+            });
+            ui.with_layout(Layout::left_to_right(Align::Center), |ui| {
+                let pips = evidence(ui, mark, "").interact(eframe::egui::Sense::click());
+                let note =
+                    if content.note.is_empty() { String::new() } else { format!("{}. ", content.note) };
+                if pips.on_hover_text(format!("{note}What this number rests on; click to change")).clicked() {
+                    content.trust = word;
+                    *done = Some(format!("{} {}", naming.name, word.word()));
+                }
+            });
+        });
     });
     remove
+}
+
+/// A name in what is left of a row, from its left edge; the whole of it on hover.
+pub(super) fn name_on_the_left(ui: &mut Ui, name: &str) {
+    ui.with_layout(Layout::left_to_right(Align::Center), |ui| {
+        ui.add(Label::new(Text::Strong.rich(name, palette(ui).ink)).truncate()).on_hover_text(name);
+    });
 }
 
 fn unit_box(content: &mut Content, naming: &Naming, ui: &mut Ui, done: &mut Option<String>) {
