@@ -14,6 +14,9 @@ pub struct Sensitivities<'a> {
     free: Vec<usize>,
     solids: Vec<usize>,
     factor: LU<f64, Dyn, Dyn>,
+    /// What each row was multiplied by, and each column.
+    rows: DVector<f64>,
+    columns: DVector<f64>,
 }
 
 /// A value whose uncertainty is asked for.
@@ -74,12 +77,14 @@ impl<'a> Sensitivities<'a> {
                 }
             }
         }
+        let amounts: Vec<f64> = solids.iter().map(|&solid| solution.solids[solid]).collect();
+        let (rows, columns) = equilibrate(&mut matrix, m, &amounts);
         let factor = matrix.lu();
         if !factor.is_invertible() {
             let residual = solution.certificate.balance_residual;
             return Err(EquilibriumError::NotConverged { residual, iterations: 0 });
         }
-        Ok(Self { problem, solution, free, solids, factor })
+        Ok(Self { problem, solution, free, solids, factor, rows, columns })
     }
 
     /// Response to the total of a component, per mol/L.
@@ -172,7 +177,9 @@ impl<'a> Sensitivities<'a> {
         for &(row, value) in shifts {
             rhs[row] += value;
         }
-        let solved = self.factor.solve(&rhs).unwrap_or_else(|| self.zero());
+        rhs.component_mul_assign(&self.rows);
+        let mut solved = self.factor.solve(&rhs).unwrap_or_else(|| self.zero());
+        solved.component_mul_assign(&self.columns);
         let (m, s) = (self.free.len(), self.solids.len());
         let mut response = Response {
             ln_a: vec![0.0; self.problem.totals.len()],
@@ -187,6 +194,27 @@ impl<'a> Sensitivities<'a> {
         }
         response
     }
+}
+
+/// Scales each balance (the first `m` rows) by the size of its component in solution and solids, and the change of each
+/// solid by its amount, so that a scarce component is not drowned in the rounding of a plentiful one. Returns the
+/// factors of rows and columns.
+fn equilibrate(matrix: &mut DMatrix<f64>, m: usize, amounts: &[f64]) -> (DVector<f64>, DVector<f64>) {
+    let size = matrix.nrows();
+    let columns = DVector::from_fn(size, |column, _| {
+        column.checked_sub(m).and_then(|solid| amounts.get(solid)).copied().unwrap_or(1.0)
+    });
+    for (column, factor) in columns.iter().enumerate() {
+        matrix.column_mut(column).scale_mut(*factor);
+    }
+    let rows = DVector::from_fn(size, |row, _| {
+        let largest = matrix.row(row).amax();
+        if largest > 0.0 { 1.0 / largest } else { 1.0 }
+    });
+    for (row, factor) in rows.iter().enumerate() {
+        matrix.row_mut(row).scale_mut(*factor);
+    }
+    (rows, columns)
 }
 
 /// ∂I/∂c of a species: ½ z², and ½ |z| of the counter-ion it calls for.
