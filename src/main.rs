@@ -8,7 +8,8 @@ use std::path::{Path, PathBuf};
 use std::process::ExitCode;
 
 fn main() -> ExitCode {
-    env_logger::init();
+    // Libraries log what the user is told in plain words anyway; RUST_LOG shows it.
+    env_logger::Builder::from_env(env_logger::Env::default().default_filter_or("off")).init();
     let arguments = Arguments::parse();
     let result = match &arguments.command {
         Some(command) => run(command, &mut std::io::stdout().lock()),

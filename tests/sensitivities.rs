@@ -2,7 +2,7 @@
 
 mod common;
 
-use bathwright::bath::{Bath, DEMOS, Point};
+use bathwright::bath::{Bath, Demo, Point};
 use bathwright::equilibrium::{ConstantModel, Equilibrium, LN_10, Sensitivities, Solver, Value};
 use common::{Dice, RandomSystem, random_system};
 
@@ -121,7 +121,7 @@ fn derivatives_agree_with_differences_on_two_hundred_random_systems() {
 /// response is not quite linear over one σ; 10 % covers both where the constants that matter are not far off.
 #[test]
 fn first_order_uncertainty_agrees_with_sampling() {
-    let bath = Bath::resolve(&DEMOS[1].project().unwrap()).unwrap();
+    let bath = Bath::resolve(&Demo::named("electroless_copper.ron").unwrap().project().unwrap()).unwrap();
     let constants = bath.constants_at(25.0);
     let doses = vec![20.0; bath.agents.len()];
     let point = Point { ph: bath.ph_set(), doses: &doses };

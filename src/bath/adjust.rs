@@ -189,10 +189,10 @@ impl Bath {
 
 #[cfg(test)]
 mod tests {
-    use crate::bath::{Adjust, Bath, DEMOS};
+    use crate::bath::{Adjust, Bath, Demo};
 
     fn copper_strike(alkali: &str) -> Bath {
-        let mut project = DEMOS[0].project().unwrap();
+        let mut project = Demo::named("copper_strike.ron").unwrap().project().unwrap();
         project.adjust = Adjust { alkali: alkali.to_owned(), ..project.adjust };
         Bath::resolve(&project).unwrap()
     }

@@ -20,15 +20,20 @@ macro_rules! demos {
 
 /// All demo baths; the program opens on the first.
 pub const DEMOS: &[Demo] = demos![
+    "electroless_nickel.ron",
     "copper_strike.ron",
     "electroless_copper.ron",
-    "electroless_nickel.ron",
     "hard_water_cleaner.ron",
     "pyrophosphate_copper.ron",
     "derusting.ron",
 ];
 
 impl Demo {
+    /// A demo bath by its file name.
+    pub fn named(file: &str) -> Option<&'static Demo> {
+        DEMOS.iter().find(|demo| demo.file == file)
+    }
+
     /// The bath.
     ///
     /// # Errors

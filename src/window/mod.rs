@@ -31,7 +31,7 @@ use thiserror::Error;
 #[derive(Debug, Error)]
 #[error("no window can open here ({reason})")]
 pub struct WindowError {
-    reason: String,
+    reason: &'static str,
 }
 
 /// Smallest window in points: the page still works at 1280 × 800 on a screen of 200 %.
@@ -52,11 +52,18 @@ pub fn open(project: Project, path: Option<PathBuf>) -> Result<(), WindowError> 
     let start = Box::new(move |context: &eframe::CreationContext<'_>| {
         Ok(Box::new(App::new(&context.egui_ctx, project, path)) as Box<dyn eframe::App>)
     });
-    eframe::run_native("bathwright", options, start)
-        .map_err(|error| WindowError { reason: one_line(&error.to_string()) })
+    eframe::run_native("bathwright", options, start).map_err(|error| {
+        log::debug!("{error}");
+        WindowError { reason: plain_reason(&error) }
+    })
 }
 
-/// The reason without line breaks.
-fn one_line(text: &str) -> String {
-    text.split_whitespace().collect::<Vec<_>>().join(" ")
+/// What is missing, in words; the library's own words go to the log.
+fn plain_reason(error: &eframe::Error) -> &'static str {
+    match error {
+        eframe::Error::Winit(_) | eframe::Error::WinitEventLoop(_) => {
+            "no display answers, neither Wayland nor X11"
+        }
+        _ => "no working OpenGL renderer; the software renderer of Mesa is enough",
+    }
 }
