@@ -12,6 +12,7 @@ mod assemble;
 mod certificate;
 mod convex;
 mod error;
+mod layout;
 mod potential;
 mod reduced;
 mod sensitivity;

@@ -3,7 +3,7 @@
 use super::certificate::Certificate;
 use super::convex::Minimiser;
 use super::error::EquilibriumError;
-use super::reduced::Reduced;
+use super::layout::Layout;
 use super::solids::{Fixed, Stage, settle};
 use super::system::{Constants, System};
 
@@ -86,18 +86,6 @@ pub struct Solver {
     warm: Option<Warm>,
 }
 
-/// Which parts of the system take part, and the balances over them.
-struct Layout {
-    /// Present components, and the column of each component.
-    columns: Vec<usize>,
-    column_of: Vec<Option<usize>>,
-    species: Vec<usize>,
-    solids: Vec<usize>,
-    base: Reduced,
-    solid_rows: Vec<Vec<f64>>,
-    ln_ks: Vec<f64>,
-}
-
 impl Solver {
     /// A fresh solver.
     pub fn new() -> Self {
@@ -144,7 +132,7 @@ impl Solver {
             layout.solids.iter().map(|&k| problem.system.solids[k].token.as_str()).collect();
         let weights = layout.weights(problem);
         let all: Vec<usize> = (0..layout.columns.len()).collect();
-        let mut x = layout.start(problem, warm);
+        let mut x = layout.start(problem, warm.map(|warm| warm.ln_a.as_slice()));
         let mut ionic_strength = warm.map_or_else(|| first_guess(problem), |warm| warm.ionic_strength);
         let corrected = problem.constants.model != super::ActivityModel::AsMeasured;
         let mut stage: Option<Stage> = None;
@@ -406,122 +394,4 @@ fn strength_response(problem: &Problem, layout: &Layout, c: &[f64], change: &[f6
         gap_change += z * dc;
     }
     0.5 * (squares + if problem.counter_ion { gap.signum() * gap_change } else { 0.0 })
-}
-
-impl Layout {
-    fn new(problem: &Problem) -> Result<Self, EquilibriumError> {
-        let system = problem.system;
-        let reverses = |i: usize| {
-            system
-                .species
-                .iter()
-                .any(|s| s.components.iter().any(|&(component, nu)| component == i && nu < 0.0))
-        };
-        let present: Vec<bool> = (0..system.components.len())
-            .map(|i| {
-                problem.held[i].is_some()
-                    || problem.totals[i] != 0.0
-                    || (system.proton == Some(i) && reverses(i))
-            })
-            .collect();
-        let columns: Vec<usize> = (0..present.len()).filter(|&i| present[i]).collect();
-        let mut column_of = vec![None; present.len()];
-        for (column, &component) in columns.iter().enumerate() {
-            column_of[component] = Some(column);
-        }
-        let occurs = |terms: &[(usize, f64)]| terms.iter().all(|&(i, _)| present[i]);
-        let species: Vec<usize> =
-            (0..system.species.len()).filter(|&j| occurs(&system.species[j].components)).collect();
-        let solids: Vec<usize> = (0..system.solids.len())
-            .filter(|&k| problem.may_form[k] && occurs(&system.solids[k].components))
-            .collect();
-        let mut base = Reduced::new(columns.len(), species.len(), solids.len());
-        let place = |terms: &[(usize, f64)]| -> Vec<(usize, f64)> {
-            terms.iter().filter_map(|&(i, nu)| column_of[i].map(|column| (column, nu))).collect()
-        };
-        for (row, &j) in species.iter().enumerate() {
-            base.offset[row] = problem.constants.ln_beta[j];
-            for (column, nu) in place(&system.species[j].components) {
-                base.set(row, column, nu);
-            }
-        }
-        let mut solid_rows = Vec::with_capacity(solids.len());
-        for (k, &solid) in solids.iter().enumerate() {
-            let mut dense = vec![0.0; columns.len()];
-            for (column, nu) in place(&system.solids[solid].components) {
-                base.set(base.solid_row(k), column, nu);
-                dense[column] = nu;
-            }
-            solid_rows.push(dense);
-        }
-        let totals_row = base.totals_row();
-        for (column, &component) in columns.iter().enumerate() {
-            if problem.held[component].is_none() {
-                base.set(totals_row, column, problem.totals[component]);
-            }
-        }
-        for (column, &component) in columns.iter().enumerate() {
-            if let Some(ln_a) = problem.held[component] {
-                base.fix(column, ln_a);
-            }
-        }
-        let ln_ks: Vec<f64> = solids.iter().map(|&k| problem.constants.ln_ks[k]).collect();
-        Self::refuse_unbounded(problem, solids_of(&base, &solids, &ln_ks))?;
-        Ok(Self { columns, column_of, species, solids, base, solid_rows, ln_ks })
-    }
-
-    /// Refuses solids that held activities alone supersaturate.
-    fn refuse_unbounded(
-        problem: &Problem,
-        mut fixed: impl Iterator<Item = (usize, f64)>,
-    ) -> Result<(), EquilibriumError> {
-        match fixed.find(|&(_, excess)| excess > 1e-9) {
-            Some((solid, excess)) => Err(EquilibriumError::UnboundedSolid {
-                solid: problem.system.solids[solid].token.clone(),
-                index: excess / super::LN_10,
-            }),
-            None => Ok(()),
-        }
-    }
-
-    /// Reciprocal size of each balance; that of H⁺, a difference of large numbers, counts as the largest.
-    fn weights(&self, problem: &Problem) -> Vec<f64> {
-        let sum: f64 = self.columns.iter().map(|&i| problem.totals[i].abs()).sum::<f64>() + 1e-30;
-        let size = |i: usize| if problem.system.proton == Some(i) { sum } else { problem.totals[i].abs() };
-        self.columns.iter().map(|&i| 1.0 / size(i).max(1e-300)).collect()
-    }
-
-    fn present(&self) -> Vec<bool> {
-        self.column_of.iter().map(Option::is_some).collect()
-    }
-
-    /// ln a over the columns to start from.
-    fn start(&self, problem: &Problem, warm: Option<&Warm>) -> Vec<f64> {
-        self.columns
-            .iter()
-            .map(|&component| match (problem.held[component], warm) {
-                (Some(ln_a), _) => ln_a,
-                (None, Some(warm)) => warm.ln_a[component],
-                (None, None) if problem.system.proton == Some(component) => -7.0 * super::LN_10,
-                (None, None) => problem.totals[component].max(1e-30).ln(),
-            })
-            .collect()
-    }
-
-    /// Values over the columns spread over all components.
-    fn spread(&self, x: &[f64], absent: f64) -> Vec<f64> {
-        self.column_of.iter().map(|column| column.map_or(absent, |column| x[column])).collect()
-    }
-}
-
-/// Solids whose ion product is fixed by held activities, with ln(IAP/Ks).
-fn solids_of<'a>(
-    base: &'a Reduced,
-    solids: &'a [usize],
-    ln_ks: &'a [f64],
-) -> impl Iterator<Item = (usize, f64)> + 'a {
-    solids.iter().enumerate().filter_map(move |(k, &solid)| {
-        let row = base.solid_row(k);
-        base.is_fixed(row).then(|| (solid, base.offset[row] - ln_ks[k]))
-    })
 }
