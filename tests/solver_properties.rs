@@ -27,7 +27,7 @@ proptest! {
     #![proptest_config(ProptestConfig { cases: 2000, failure_persistence: None, ..ProptestConfig::default() })]
 
     #[test]
-    fn every_random_system_converges_with_its_certificate(seed in any::<u64>()) {
+    fn every_random_system_converges_with_its_certificate(seed in 0u64..100_000) {
         prop_assert!(check(seed).is_ok(), "{}", check(seed).unwrap_err());
     }
 }

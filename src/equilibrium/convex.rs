@@ -13,6 +13,8 @@ const TOLERANCE: f64 = 1e-14;
 const ACCEPTED: f64 = 1e-11;
 /// Smallest pivot of the scaled Hessian at which a step is mostly rounding.
 const HOPELESS: f64 = 1e-10;
+/// Farthest that one step may move an unknown, ln units: farther than any real jump, nearer than underflow.
+const FARTHEST: f64 = 100.0;
 const MAX_STEPS: usize = 400;
 const MAX_SWEEPS: usize = 60;
 
@@ -327,7 +329,8 @@ impl Minimiser {
 
     /// Full step unless a species would leap past what its components can hold.
     fn longest_step(&mut self, sparse: &Sparse) -> f64 {
-        let mut length: f64 = 1.0;
+        let farthest = self.step.iter().fold(0.0f64, |max, step| max.max(step.abs()));
+        let mut length = if farthest > FARTHEST { FARTHEST / farthest } else { 1.0 };
         for j in 0..sparse.rows() {
             let rise = sparse.dot(j, &self.step);
             self.exponent_step[j] = rise;

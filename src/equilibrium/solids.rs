@@ -55,17 +55,17 @@ impl Stage {
     /// Takes the given solids out of `base`; `x` is a guess of ln a over all columns.
     pub fn prepare(fixed: &Fixed, active: &[usize], x: &[f64]) -> Self {
         let mut reduced = fixed.base.clone();
-        let mut taken = Vec::with_capacity(active.len());
-        for &solid in active {
-            let row = reduced.solid_row(solid);
-            // The scarcest component of a solid tells its amount most exactly.
-            if let Some(column) = reduced.largest(row, |column| fixed.column_weight[column]) {
-                let value = fixed.ln_ks[solid] - reduced.offset[row];
-                reduced.pivot(column, row);
-                reduced.fix(column, value);
-                taken.push((solid, column));
-            }
+        let mut taken: Vec<Option<usize>> = vec![None; active.len()];
+        // The scarcest component of a solid tells its amount most exactly. All solids are looked at before each
+        // elimination, so that the order in which they formed doesn't decide which balances are mixed.
+        while let Some((place, column)) = scarcest(fixed, &reduced, active, &taken) {
+            let row = reduced.solid_row(active[place]);
+            let value = fixed.ln_ks[active[place]] - reduced.offset[row];
+            reduced.pivot(column, row);
+            reduced.fix(column, value);
+            taken[place] = Some(column);
         }
+        let taken = active.iter().zip(taken).filter_map(|(&solid, column)| Some((solid, column?))).collect();
         let y = reduced.live.iter().map(|&column| x[column]).collect();
         let sparse = reduced.sparse();
         let origin = reduced.clone();
@@ -93,6 +93,7 @@ impl Stage {
                 break;
             }
             self.refresh(fixed);
+            minimiser.approach(&self.sparse, &self.k, &mut self.y);
             let steps = outcome.steps;
             outcome = minimiser.minimise(&self.sparse, &self.k, &mut self.y, !better);
             outcome.steps += steps;
@@ -170,6 +171,22 @@ impl Stage {
         let target = DVector::from_fn(size, |r, _| fixed.solid_rows[solid][self.active[r].1]);
         matrix.lu().solve(&target).map_or_else(|| vec![0.0; size], |alpha| alpha.iter().copied().collect())
     }
+}
+
+/// The place among `active` and the column of the next elimination: the largest entry in units of the totals.
+fn scarcest(
+    fixed: &Fixed,
+    reduced: &Reduced,
+    active: &[usize],
+    taken: &[Option<usize>],
+) -> Option<(usize, usize)> {
+    let candidates = active.iter().enumerate().filter(|&(place, _)| taken[place].is_none());
+    let entries = candidates.filter_map(|(place, &solid)| {
+        let row = reduced.solid_row(solid);
+        let column = reduced.largest(row, |column| fixed.column_weight[column])?;
+        Some((place, column, reduced.get(row, column).abs() * fixed.column_weight[column]))
+    });
+    entries.max_by(|a, b| a.2.total_cmp(&b.2)).map(|(place, column, _)| (place, column))
 }
 
 /// Finds the present solids and the minimum; returns their amounts beside the outcome of the last minimisation.
