@@ -23,6 +23,9 @@ pub(super) struct Reduced {
 
 /// Entries smaller than this are rounding left-overs of eliminated integers.
 const ZERO: f64 = 1e-11;
+/// Totals smaller than this are rounding left-overs. A total is a measured number, and the difference of two nearly
+/// equal ones decides everything near an equivalence point, so only the rounding of the subtraction itself goes.
+const ZERO_TOTAL: f64 = 4.0 * f64::EPSILON;
 
 impl Reduced {
     /// An empty problem over `width` components.
@@ -63,7 +66,9 @@ impl Reduced {
     pub fn pivot(&mut self, column: usize, by: usize) {
         let pivot_row: Vec<f64> = self.rows[by * self.width..(by + 1) * self.width].to_vec();
         let pivot = pivot_row[column];
-        for row in self.rows.chunks_exact_mut(self.width) {
+        let totals_row = self.totals_row();
+        for (place, row) in self.rows.chunks_exact_mut(self.width).enumerate() {
+            let zero = if place == totals_row { ZERO_TOTAL } else { ZERO };
             let factor = row[column] / pivot;
             if factor == 0.0 {
                 continue;
@@ -73,7 +78,7 @@ impl Reduced {
                     row[i] = factor;
                 } else {
                     let value = row[i] - factor * pivot_row[i];
-                    row[i] = if value.abs() < ZERO * (row[i].abs() + 1e-300) { 0.0 } else { value };
+                    row[i] = if value.abs() < zero * row[i].abs() { 0.0 } else { value };
                 }
             }
         }

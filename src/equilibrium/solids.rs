@@ -206,7 +206,8 @@ pub(super) fn settle(
         outcome.steps = steps;
         stage.ln_activities(all_columns, x);
         let found = stage.amounts(fixed, &minimiser.c);
-        if let Some(kept) = retreat(&mut amounts, &found, &mut barred) {
+        let sizes: Vec<f64> = stage.active.iter().map(|&(solid, _)| largest_amount(fixed, solid)).collect();
+        if let Some(kept) = retreat(&mut amounts, &found, &sizes, &mut barred) {
             *stage = Stage::prepare(fixed, &kept, x);
             continue;
         }
@@ -230,12 +231,24 @@ pub(super) fn settle(
     Err(EquilibriumError::NotConverged { residual: f64::NAN, iterations: steps })
 }
 
+/// What the scarcest component of a solid allows of it. Rounding of an amount is judged by this, not by the amounts
+/// of other solids: 1e−14 mol/L of one is no rounding error because there are 5 mol/L of another.
+fn largest_amount(fixed: &Fixed, solid: usize) -> f64 {
+    let weighted =
+        fixed.solid_rows[solid].iter().zip(fixed.column_weight).map(|(nu, weight)| nu.abs() * weight);
+    1.0 / weighted.fold(1e-300, f64::max)
+}
+
 /// Moves the amounts towards those found. When one would turn negative the move stops where the first reaches
 /// zero, that solid leaves, and the solids that stay are returned.
-fn retreat(amounts: &mut Vec<(usize, f64)>, found: &[f64], barred: &mut Vec<usize>) -> Option<Vec<usize>> {
-    let size = found.iter().fold(0.0f64, |max, n| max.max(n.abs()));
-    let negative = |n: f64| n < -1e-13 * size || (n < 0.0 && n > -1e-300);
-    if !found.iter().any(|&n| negative(n)) {
+fn retreat(
+    amounts: &mut Vec<(usize, f64)>,
+    found: &[f64],
+    sizes: &[f64],
+    barred: &mut Vec<usize>,
+) -> Option<Vec<usize>> {
+    let negative = |n: f64, size: f64| n < -1e-13 * size || (n < 0.0 && n > -1e-300);
+    if !found.iter().zip(sizes).any(|(&n, &size)| negative(n, size)) {
         for (amount, &n) in amounts.iter_mut().zip(found) {
             amount.1 = n.max(0.0);
         }
@@ -243,8 +256,8 @@ fn retreat(amounts: &mut Vec<(usize, f64)>, found: &[f64], barred: &mut Vec<usiz
         return None;
     }
     let mut share: f64 = 1.0;
-    for (amount, &n) in amounts.iter().zip(found) {
-        if negative(n) {
+    for ((amount, &n), &size) in amounts.iter().zip(found).zip(sizes) {
+        if negative(n, size) {
             share = share.min(amount.1 / (amount.1 - n));
         }
     }
@@ -252,9 +265,9 @@ fn retreat(amounts: &mut Vec<(usize, f64)>, found: &[f64], barred: &mut Vec<usiz
     let before = amounts.len();
     let mut place = 0;
     amounts.retain_mut(|amount| {
-        let n = found[place];
+        let (n, size) = (found[place], sizes[place]);
         place += 1;
-        let leaves = negative(n) && amount.1 / (amount.1 - n) <= share * (1.0 + 1e-12);
+        let leaves = negative(n, size) && amount.1 / (amount.1 - n) <= share * (1.0 + 1e-12);
         amount.1 += share * (n - amount.1);
         if leaves {
             // A solid that leaves as soon as it came must not come straight back (rounding at saturation one).
