@@ -1,6 +1,6 @@
 //! The part of the library that a set of components can form.
 
-use super::system::{SolidEntry, SpeciesEntry, System, Terms};
+use super::system::{SolidEntry, SpeciesEntry, System, SystemParts, Terms};
 use super::temperature::ConstantModel;
 use crate::chemistry::{Freshness, Library, Origin, PROTON, Reaction, WATER, charge_of};
 use std::collections::BTreeMap;
@@ -23,7 +23,7 @@ pub fn assemble(library: &Library, present: &[usize]) -> System {
             })
             .collect()
     };
-    let mut system = System::default();
+    let mut system = SystemParts::default();
     for (index, &old) in present.iter().enumerate() {
         let token = library.components[old].token.clone();
         let entry = SpeciesEntry {
@@ -64,8 +64,8 @@ pub fn assemble(library: &Library, present: &[usize]) -> System {
         system.constants.push(ConstantModel::new(&constant.record, &constant.reaction, water));
         system.library_constants.push(old);
     }
-    system.proton = system.component(PROTON);
-    system
+    system.proton = system.components.iter().position(|token| token == PROTON);
+    system.into()
 }
 
 fn is_water(reaction: &Reaction) -> bool {

@@ -9,27 +9,35 @@
 
 mod activity;
 mod assemble;
+mod balances;
 mod certificate;
+mod cholesky;
 mod convex;
+mod coupling;
 mod error;
+mod lanes;
 mod layout;
 mod potential;
-mod reduced;
+mod problem;
+mod report;
 mod sensitivity;
 mod solids;
 mod solver;
+mod stage;
+mod start;
 mod system;
 mod temperature;
 mod water;
 
-pub use activity::{ActivityModel, DAVIES_LIMIT};
+pub use activity::{ActivityModel, DAVIES_LIMIT, ION_INTERACTION_LIMIT, Interaction};
 pub use assemble::assemble;
 pub use certificate::Certificate;
 pub use error::EquilibriumError;
 pub use potential::nernst;
 pub use sensitivity::{Response, Sensitivities, Value};
-pub use solver::{Equilibrium, Problem, Solver};
-pub use system::{Constants, SolidEntry, SpeciesEntry, System, Terms};
+pub use problem::{Equilibrium, Problem};
+pub use solver::Solver;
+pub use system::{Constants, SolidEntry, SpeciesEntry, System, SystemParts, Terms};
 pub use temperature::{ConstantModel, TemperatureBasis};
 pub use water::{debye_huckel_a, log10_kw};
 

@@ -93,8 +93,8 @@ impl ConstantModel {
         let squares = match (model, self.convention) {
             (_, Convention::Thermodynamic) | (ActivityModel::AsMeasured, Convention::Mixed) => 0.0,
             (ActivityModel::AsMeasured, Convention::Concentration) => self.proton_change,
-            (ActivityModel::Davies, Convention::Concentration) => self.charge_square_change,
-            (ActivityModel::Davies, Convention::Mixed) => self.charge_square_change - self.proton_change,
+            (_, Convention::Concentration) => self.charge_square_change,
+            (_, Convention::Mixed) => self.charge_square_change - self.proton_change,
         };
         -per_square * squares
     }

@@ -2,7 +2,7 @@
 
 #![allow(dead_code)]
 
-use bathwright::equilibrium::{ActivityModel, Constants, Problem, SolidEntry, SpeciesEntry, System};
+use bathwright::equilibrium::{ActivityModel, Constants, Problem, SolidEntry, SpeciesEntry, System, SystemParts};
 
 /// A small deterministic generator (xorshift64*, Vigna 2016), so that a failing seed can be run again anywhere.
 pub struct Dice(u64);
@@ -72,16 +72,16 @@ pub fn random_system(seed: u64) -> RandomSystem {
     let mut charges = vec![1.0];
     charges.extend((0..metals).map(|_| dice.whole(1, 3) as f64));
     charges.extend((0..agents).map(|_| -(dice.whole(0, 4) as f64)));
-    let mut system = System {
+    let mut system = SystemParts {
         components: (0..count).map(|i| format!("X{i}")).collect(),
         proton: Some(0),
-        ..System::default()
+        ..SystemParts::default()
     };
     let mut ln_beta = vec![0.0; count];
     for i in 0..count {
         system.species.push(species(format!("X{i}"), vec![(i, 1.0)], &charges));
     }
-    let push = |system: &mut System, ln_beta: &mut Vec<f64>, components: Vec<(usize, f64)>, log_beta: f64| {
+    let push = |system: &mut SystemParts, ln_beta: &mut Vec<f64>, components: Vec<(usize, f64)>, log_beta: f64| {
         let token = format!("S{}", system.species.len());
         system.species.push(species(token, components, &charges));
         ln_beta.push(log_beta * std::f64::consts::LN_10);
@@ -139,7 +139,7 @@ pub fn random_system(seed: u64) -> RandomSystem {
         ln_ks.push(dice.between(-25.0, 10.0) * std::f64::consts::LN_10);
     }
     let model = if dice.chance(0.5) { ActivityModel::Davies } else { ActivityModel::AsMeasured };
-    let constants = Constants { ln_beta, ln_ks, model, slope_a: 0.5105 };
+    let constants = Constants { ln_beta, ln_ks, model, slope_a: 0.5105, water_kg_l: 1.0 };
     let may_form = vec![true; system.solids.len()];
-    RandomSystem { system, constants, totals, held, may_form }
+    RandomSystem { system: system.into(), constants, totals, held, may_form }
 }

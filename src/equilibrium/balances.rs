@@ -1,0 +1,251 @@
+//! The balances in a changed set of unknowns.
+//!
+//! Three things take unknowns out or turn them, and all are the same elimination step: a held activity fixes its
+//! column; a solid that is present fixes one combination of columns; and a species that holds nearly all of two
+//! components is a better unknown than either (the difference of two nearly equal totals is then formed once,
+//! exactly, instead of being lost in every sum).
+
+use super::lanes::{Lane, WIDTH, ZERO_LANE, add_scaled, at, lanes_for, put};
+
+/// Rows of species and solids, and the totals, over the present unknowns.
+///
+/// Row r stands for eᵣ = offsetᵣ + Σ rows[r][i]·yᵢ: ln c of a species without its activity coefficient, or the ln IAP of
+/// a solid. The totals T transform like a row, because T·y is invariant. Stored by columns, each filled up to whole
+/// lanes with zeros: first the species, then the solids.
+#[derive(Clone, Debug, Default)]
+pub(super) struct Balances {
+    width: usize,
+    species: usize,
+    species_lanes: usize,
+    stride: usize,
+    columns: Vec<Lane>,
+    /// Constant part of each row.
+    offset: Vec<Lane>,
+    /// Total over each column.
+    pub totals: Vec<f64>,
+    /// Columns that are still unknown.
+    pub live: Vec<usize>,
+    /// What was done to the totals and the constant parts, so that it can be done to others.
+    record: Vec<Event>,
+    pivot_rows: Vec<f64>,
+}
+
+/// A step of the elimination.
+#[derive(Clone, Copy, Debug)]
+enum Event {
+    /// A column was replaced; its pivot row is the next of `pivot_rows`.
+    Turned(usize),
+    /// A column was given the value that saturates a solid.
+    Saturated { column: usize, solid: usize },
+}
+
+/// Entries smaller than this are rounding left-overs of eliminated integers.
+const ZERO: f64 = 1e-11;
+/// Totals smaller than this are rounding left-overs. A total is a measured number, and the difference of two nearly
+/// equal ones decides everything near an equivalence point, so only the rounding of the subtraction itself goes.
+const ZERO_TOTAL: f64 = 4.0 * f64::EPSILON;
+
+impl Balances {
+    /// Balances over `width` components without entries.
+    pub fn new(width: usize, species: usize, solids: usize) -> Self {
+        let species_lanes = lanes_for(species);
+        let stride = species_lanes + lanes_for(solids);
+        let mut empty = Self {
+            width,
+            species,
+            species_lanes,
+            stride,
+            columns: vec![ZERO_LANE; width * stride],
+            offset: vec![ZERO_LANE; stride],
+            totals: vec![0.0; width],
+            live: (0..width).collect(),
+            record: Vec::new(),
+            pivot_rows: Vec::new(),
+        };
+        empty.clear_offset();
+        empty
+    }
+
+    /// Becomes a copy of another without giving up its buffers.
+    pub fn copy_from(&mut self, other: &Self) {
+        (self.width, self.species) = (other.width, other.species);
+        (self.species_lanes, self.stride) = (other.species_lanes, other.stride);
+        self.columns.clone_from(&other.columns);
+        self.offset.clone_from(&other.offset);
+        self.totals.clone_from(&other.totals);
+        self.live.clone_from(&other.live);
+        self.record.clone_from(&other.record);
+        self.pivot_rows.clone_from(&other.pivot_rows);
+    }
+
+    pub fn set(&mut self, row: usize, column: usize, value: f64) {
+        put(&mut self.columns[column * self.stride..], row, value);
+    }
+
+    pub fn get(&self, row: usize, column: usize) -> f64 {
+        at(&self.columns[column * self.stride..], row)
+    }
+
+    pub fn offset(&self, row: usize) -> f64 {
+        at(&self.offset, row)
+    }
+
+    pub fn set_offset(&mut self, row: usize, value: f64) {
+        put(&mut self.offset, row, value);
+    }
+
+    /// Row index of solid `k`.
+    pub fn solid_row(&self, k: usize) -> usize {
+        self.species_lanes * WIDTH + k
+    }
+
+    pub fn species_count(&self) -> usize {
+        self.species
+    }
+
+    /// Lanes that the species fill in each column.
+    pub fn species_lanes(&self) -> usize {
+        self.species_lanes
+    }
+
+    /// The species of a column.
+    #[inline(always)]
+    pub fn column(&self, column: usize) -> &[Lane] {
+        &self.columns[column * self.stride..column * self.stride + self.species_lanes]
+    }
+
+    /// Constant parts of the species.
+    pub fn species_offset(&self) -> &[Lane] {
+        &self.offset[..self.species_lanes]
+    }
+
+    /// Replaces unknown `column` by the variable part of row `by`: y_column = (z − Σ others)/pivot.
+    #[inline(always)]
+    pub fn pivot(&mut self, column: usize, by: usize) {
+        let (stride, start) = (self.stride, self.pivot_rows.len());
+        for i in 0..self.width {
+            let entry = self.get(by, i);
+            self.pivot_rows.push(entry);
+        }
+        self.record.push(Event::Turned(column));
+        let pivot = self.pivot_rows[start + column];
+        for q in 0..stride {
+            for entry in &mut self.columns[column * stride + q] {
+                *entry /= pivot;
+            }
+        }
+        for &i in &self.live {
+            let across = self.pivot_rows[start + i];
+            if i == column || across == 0.0 {
+                continue;
+            }
+            for q in 0..stride {
+                let factor = self.columns[column * stride + q];
+                let old = &mut self.columns[i * stride + q];
+                for l in 0..WIDTH {
+                    let value = old[l] - factor[l] * across;
+                    old[l] = if value.abs() < ZERO * old[l].abs() { 0.0 } else { value };
+                }
+            }
+        }
+        turn_totals(&mut self.totals, &self.live, column, &self.pivot_rows[start..]);
+    }
+
+    /// Gives the unknown `column`, turned into the row of a solid, the value that saturates it, and takes it out.
+    pub fn saturate(&mut self, column: usize, solid: usize, ln_ks: f64) {
+        let value = ln_ks - self.offset(self.solid_row(solid));
+        self.shift_by(column, value);
+        self.live.retain(|&live| live != column);
+        self.record.push(Event::Saturated { column, solid });
+    }
+
+    /// Takes over the totals and the constant parts of the balances that these were turned from.
+    pub fn reload(&mut self, from: &Self, ln_ks: &[f64]) {
+        self.offset.copy_from_slice(&from.offset);
+        self.totals.copy_from_slice(&from.totals);
+        let mut rows = self.pivot_rows.chunks_exact(self.width.max(1));
+        let record = std::mem::take(&mut self.record);
+        for (done, event) in record.iter().enumerate() {
+            match *event {
+                Event::Turned(column) => {
+                    // Columns that went out later were still live then.
+                    let Some(row) = rows.next() else { continue };
+                    let later = record[done..].iter().filter_map(|event| match event {
+                        Event::Saturated { column, .. } => Some(*column),
+                        Event::Turned(_) => None,
+                    });
+                    let factor = self.totals[column] / row[column];
+                    for i in self.live.iter().copied().chain(later).filter(|&i| i != column) {
+                        turn_total(&mut self.totals[i], factor, row[i]);
+                    }
+                    self.totals[column] = factor;
+                }
+                Event::Saturated { column, solid } => {
+                    let value = ln_ks[solid] - at(&self.offset, self.solid_row(solid));
+                    let entries = &self.columns[column * self.stride..(column + 1) * self.stride];
+                    for (offset, entries) in self.offset.iter_mut().zip(entries) {
+                        add_scaled(offset, value, entries);
+                    }
+                }
+            }
+        }
+        self.record = record;
+    }
+
+    /// Takes a column out whose value stands in the constant parts already.
+    pub fn hold(&mut self, column: usize) {
+        self.live.retain(|&live| live != column);
+    }
+
+    /// Sets the constant parts of the rows to zero; the places that fill up the last lane hold nothing, ever.
+    pub fn clear_offset(&mut self) {
+        self.offset.fill(ZERO_LANE);
+        for place in self.species..self.species_lanes * WIDTH {
+            put(&mut self.offset, place, f64::NEG_INFINITY);
+        }
+    }
+
+    /// Adds a column times a value to the constant parts.
+    pub fn shift_by(&mut self, column: usize, value: f64) {
+        let entries = &self.columns[column * self.stride..(column + 1) * self.stride];
+        for (offset, entries) in self.offset.iter_mut().zip(entries) {
+            add_scaled(offset, value, entries);
+        }
+    }
+
+    /// The live column with the largest weighted entry of a row, `None` when the row is fixed already.
+    pub fn largest(&self, row: usize, weight: impl Fn(usize) -> f64) -> Option<usize> {
+        let mut best = (0.0, None);
+        for &column in &self.live {
+            let entry = self.get(row, column).abs();
+            let weighted = entry * weight(column);
+            if entry > 1e-9 && weighted > 0.0 && weighted >= best.0 {
+                best = (weighted, Some(column));
+            }
+        }
+        best.1
+    }
+
+    /// Whether a row has no live entry: its value does not depend on the unknowns any more.
+    pub fn is_fixed(&self, row: usize) -> bool {
+        self.live.iter().all(|&column| self.get(row, column).abs() <= 1e-9)
+    }
+
+    /// Value of a row at the unknowns `y` (one for each live column).
+    pub fn value(&self, row: usize, y: &[f64]) -> f64 {
+        self.offset(row) + self.live.iter().zip(y).map(|(&column, y)| self.get(row, column) * y).sum::<f64>()
+    }
+}
+
+fn turn_totals(totals: &mut [f64], live: &[usize], column: usize, pivot_row: &[f64]) {
+    let factor = totals[column] / pivot_row[column];
+    for &i in live.iter().filter(|&&i| i != column) {
+        turn_total(&mut totals[i], factor, pivot_row[i]);
+    }
+    totals[column] = factor;
+}
+
+fn turn_total(total: &mut f64, factor: f64, across: f64) {
+    let value = *total - factor * across;
+    *total = if value.abs() < ZERO_TOTAL * total.abs() { 0.0 } else { value };
+}
