@@ -5,7 +5,8 @@
 //! components is a better unknown than either (the difference of two nearly equal totals is then formed once,
 //! exactly, instead of being lost in every sum).
 
-use super::lanes::{Lane, WIDTH, ZERO_LANE, add_scaled, at, lanes_for, put};
+use super::lanes::{Lane, WIDTH, ZERO_LANE, at, divide, eliminate, lanes_for, put};
+use pulp::Simd;
 
 /// Rows of species and solids, and the totals, over the present unknowns.
 ///
@@ -25,6 +26,8 @@ pub(super) struct Balances {
     pub totals: Vec<f64>,
     /// Columns that are still unknown.
     pub live: Vec<usize>,
+    /// Which groups of lanes of each column have entries among the species, a bit each.
+    occupied: Vec<u64>,
     /// What was done to the totals and the constant parts, so that it can be done to others.
     record: Vec<Event>,
     pivot_rows: Vec<f64>,
@@ -59,6 +62,7 @@ impl Balances {
             offset: vec![ZERO_LANE; stride],
             totals: vec![0.0; width],
             live: (0..width).collect(),
+            occupied: vec![0; width],
             record: Vec::new(),
             pivot_rows: Vec::new(),
         };
@@ -74,6 +78,7 @@ impl Balances {
         self.offset.clone_from(&other.offset);
         self.totals.clone_from(&other.totals);
         self.live.clone_from(&other.live);
+        self.occupied.clone_from(&other.occupied);
         self.record.clone_from(&other.record);
         self.pivot_rows.clone_from(&other.pivot_rows);
     }
@@ -114,14 +119,41 @@ impl Balances {
         &self.columns[column * self.stride..column * self.stride + self.species_lanes]
     }
 
+    /// Looks anew where the columns have entries; to be called when they have changed.
+    pub fn survey(&mut self) {
+        let group = self.lanes_per_group();
+        for (column, occupied) in self.occupied.iter_mut().enumerate() {
+            let lanes = &self.columns[column * self.stride..column * self.stride + self.species_lanes];
+            *occupied = lanes.iter().enumerate().fold(0, |bits, (q, lane)| {
+                if *lane == ZERO_LANE { bits } else { bits | 1 << (q / group) }
+            });
+        }
+    }
+
+    fn lanes_per_group(&self) -> usize {
+        self.species_lanes.div_ceil(64).max(1)
+    }
+
+    /// The lanes in which a column has entries, as a set to walk.
+    #[inline(always)]
+    pub fn lanes_of(&self, column: usize) -> Occupied {
+        let (bits, group) = (self.occupied[column], self.lanes_per_group());
+        Occupied { bits, group, lanes: self.species_lanes, next: 0, end: 0 }
+    }
+
     /// Constant parts of the species.
     pub fn species_offset(&self) -> &[Lane] {
         &self.offset[..self.species_lanes]
     }
 
     /// Replaces unknown `column` by the variable part of row `by`: y_column = (z − Σ others)/pivot.
-    #[inline(always)]
     pub fn pivot(&mut self, column: usize, by: usize) {
+        pulp::Arch::new().dispatch(Pivot { balances: self, column, by });
+    }
+
+    /// As [`Balances::pivot`] inside code that uses the widest instructions already.
+    #[inline(always)]
+    pub fn pivot_here<S: Simd>(&mut self, simd: S, column: usize, by: usize) {
         let (stride, start) = (self.stride, self.pivot_rows.len());
         for i in 0..self.width {
             let entry = self.get(by, i);
@@ -129,24 +161,20 @@ impl Balances {
         }
         self.record.push(Event::Turned(column));
         let pivot = self.pivot_rows[start + column];
-        for q in 0..stride {
-            for entry in &mut self.columns[column * stride + q] {
-                *entry /= pivot;
-            }
-        }
+        let (before, rest) = self.columns.split_at_mut(column * stride);
+        let (own, after) = rest.split_at_mut(stride);
+        divide(simd, own, pivot);
         for &i in &self.live {
             let across = self.pivot_rows[start + i];
             if i == column || across == 0.0 {
                 continue;
             }
-            for q in 0..stride {
-                let factor = self.columns[column * stride + q];
-                let old = &mut self.columns[i * stride + q];
-                for l in 0..WIDTH {
-                    let value = old[l] - factor[l] * across;
-                    old[l] = if value.abs() < ZERO * old[l].abs() { 0.0 } else { value };
-                }
-            }
+            let other = if i < column {
+                &mut before[i * stride..(i + 1) * stride]
+            } else {
+                &mut after[(i - column - 1) * stride..(i - column) * stride]
+            };
+            eliminate(simd, other, across, own, ZERO);
         }
         turn_totals(&mut self.totals, &self.live, column, &self.pivot_rows[start..]);
     }
@@ -183,9 +211,7 @@ impl Balances {
                 Event::Saturated { column, solid } => {
                     let value = ln_ks[solid] - at(&self.offset, self.solid_row(solid));
                     let entries = &self.columns[column * self.stride..(column + 1) * self.stride];
-                    for (offset, entries) in self.offset.iter_mut().zip(entries) {
-                        add_scaled(offset, value, entries);
-                    }
+                    shift(&mut self.offset, value, entries);
                 }
             }
         }
@@ -208,9 +234,7 @@ impl Balances {
     /// Adds a column times a value to the constant parts.
     pub fn shift_by(&mut self, column: usize, value: f64) {
         let entries = &self.columns[column * self.stride..(column + 1) * self.stride];
-        for (offset, entries) in self.offset.iter_mut().zip(entries) {
-            add_scaled(offset, value, entries);
-        }
+        shift(&mut self.offset, value, entries);
     }
 
     /// The live column with the largest weighted entry of a row, `None` when the row is fixed already.
@@ -234,6 +258,66 @@ impl Balances {
     /// Value of a row at the unknowns `y` (one for each live column).
     pub fn value(&self, row: usize, y: &[f64]) -> f64 {
         self.offset(row) + self.live.iter().zip(y).map(|(&column, y)| self.get(row, column) * y).sum::<f64>()
+    }
+}
+
+/// A pivot with the widest instructions of the processor at hand.
+struct Pivot<'a> {
+    balances: &'a mut Balances,
+    column: usize,
+    by: usize,
+}
+
+impl pulp::WithSimd for Pivot<'_> {
+    type Output = ();
+
+    #[inline(always)]
+    fn with_simd<S: Simd>(self, simd: S) {
+        self.balances.pivot_here(simd, self.column, self.by);
+    }
+}
+
+/// A set of lanes to walk.
+#[derive(Clone, Copy, Debug)]
+pub(super) struct Occupied {
+    bits: u64,
+    group: usize,
+    lanes: usize,
+    /// The rest of the group at hand.
+    next: usize,
+    end: usize,
+}
+
+impl Occupied {
+    /// The lanes that are in both sets.
+    #[inline(always)]
+    pub fn and(self, other: Self) -> Self {
+        Self { bits: self.bits & other.bits, ..self }
+    }
+}
+
+impl Iterator for Occupied {
+    type Item = usize;
+
+    #[inline(always)]
+    fn next(&mut self) -> Option<usize> {
+        if self.next == self.end {
+            if self.bits == 0 {
+                return None;
+            }
+            self.next = self.bits.trailing_zeros() as usize * self.group;
+            self.end = (self.next + self.group).min(self.lanes);
+            self.bits &= self.bits - 1;
+        }
+        self.next += 1;
+        Some(self.next - 1)
+    }
+}
+
+/// `sum += factor · lanes`.
+fn shift(sum: &mut [Lane], factor: f64, lanes: &[Lane]) {
+    for (sum, lane) in sum.as_flattened_mut().iter_mut().zip(lanes.as_flattened()) {
+        *sum += factor * lane;
     }
 }
 

@@ -7,7 +7,8 @@
 
 use super::balances::Balances;
 use super::cholesky::Cholesky;
-use super::lanes::{Lane, WIDTH, ZERO_LANE, add_scaled, exp, larger, total};
+use super::lanes::{Lane, WIDTH, ZERO_LANE, add_scaled, both_sides, dot, exp, larger, multiply};
+use pulp::Simd;
 
 /// Relative balance residual at which the iteration is at its end in double precision.
 const TOLERANCE: f64 = 1e-14;
@@ -69,16 +70,27 @@ impl Minimiser {
 
     /// Finds the minimum from the start `y`, which is overwritten. Without `patience` it gives up, unconverged, as soon
     /// as two unknowns are one to rounding: the caller can then choose better ones.
-    #[inline(always)]
     pub fn minimise(&mut self, balances: &Balances, k: &[Lane], y: &mut [f64], patience: bool) -> Outcome {
+        pulp::Arch::new().dispatch(Descent { minimiser: self, balances, k, y, patience })
+    }
+
+    #[inline(always)]
+    fn descend<S: Simd>(
+        &mut self,
+        simd: S,
+        balances: &Balances,
+        k: &[Lane],
+        y: &mut [f64],
+        patience: bool,
+    ) -> Outcome {
         self.resize(balances);
         self.find_caps(balances);
         let mut outcome =
             Outcome { residual: f64::INFINITY, steps: 0, smallest_pivot: 1.0, converged: false };
         let (mut best, mut idle) = (f64::INFINITY, 0);
-        self.evaluate(balances, k, y);
+        self.evaluate(simd, balances, k, y);
         if self.residual(balances) >= FAR {
-            self.approach(balances, k, y);
+            self.approach(simd, balances, k, y);
         }
         while outcome.steps < MAX_STEPS {
             outcome.residual = self.residual(balances);
@@ -88,12 +100,12 @@ impl Minimiser {
                 break;
             }
             outcome.steps += 1;
-            self.build_hessian(balances);
+            self.build_hessian(simd, balances);
             outcome.smallest_pivot = self.factor.factorise();
             if !patience && outcome.smallest_pivot < HOPELESS && outcome.residual > ACCEPTED {
                 break;
             }
-            if !self.search(balances, k, y) {
+            if !self.search(simd, balances, k, y) {
                 break;
             }
         }
@@ -103,10 +115,10 @@ impl Minimiser {
     }
 
     /// Brings a start from orders of magnitude away to where Newton's method is at home.
-    fn approach(&mut self, balances: &Balances, k: &[Lane], y: &mut [f64]) {
+    fn approach<S: Simd>(&mut self, simd: S, balances: &Balances, k: &[Lane], y: &mut [f64]) {
         for _ in 0..MAX_SWEEPS {
-            let settled = self.sweep(balances, k, y) < 1.0;
-            self.evaluate(balances, k, y);
+            let settled = self.sweep(simd, balances, k, y) < 1.0;
+            self.evaluate(simd, balances, k, y);
             if settled || self.residual(balances) < FAR {
                 break;
             }
@@ -115,7 +127,7 @@ impl Minimiser {
 
     /// One pass of coordinate steps on the logarithm of each balance. Returns the largest move.
     #[inline(always)]
-    fn sweep(&mut self, balances: &Balances, k: &[Lane], y: &mut [f64]) -> f64 {
+    fn sweep<S: Simd>(&mut self, simd: S, balances: &Balances, k: &[Lane], y: &mut [f64]) -> f64 {
         let mut largest: f64 = 0.0;
         for (place, &column) in balances.live.iter().enumerate() {
             let entries = balances.column(column);
@@ -126,7 +138,7 @@ impl Minimiser {
                 if *entry == ZERO_LANE {
                     continue;
                 }
-                let exponent = exponents(balances, k, y, q);
+                let exponent = exponents(simd, balances, k, y, q);
                 let c = exp(&exponent);
                 for l in 0..WIDTH {
                     if entry[l] > 0.0 && exponent[l] > highest {
@@ -182,21 +194,15 @@ impl Minimiser {
 
     /// Exponents, concentrations and both sides of each balance at `y`.
     #[inline(always)]
-    pub fn evaluate(&mut self, balances: &Balances, k: &[Lane], y: &[f64]) {
-        for (q, (exponent, c)) in self.exponent.iter_mut().zip(&mut self.c).enumerate() {
-            *exponent = exponents(balances, k, y, q);
+    pub fn evaluate<S: Simd>(&mut self, simd: S, balances: &Balances, k: &[Lane], y: &[f64]) {
+        let Self { exponent, c, plus, minus, .. } = self;
+        for (q, (exponent, c)) in exponent.iter_mut().zip(&mut *c).enumerate() {
+            *exponent = exponents(simd, balances, k, y, q);
             *c = exp(exponent);
         }
         for (place, &column) in balances.live.iter().enumerate() {
-            let (mut plus, mut minus) = (ZERO_LANE, ZERO_LANE);
-            for (c, entry) in self.c.iter().zip(balances.column(column)) {
-                for l in 0..WIDTH {
-                    let part = entry[l] * c[l];
-                    plus[l] += larger(part, 0.0);
-                    minus[l] += larger(-part, 0.0);
-                }
-            }
-            (self.plus[place], self.minus[place]) = (total(&plus), total(&minus));
+            (plus[place], minus[place]) =
+                both_sides(simd, balances.column(column), c, balances.lanes_of(column));
         }
     }
 
@@ -224,37 +230,28 @@ impl Minimiser {
     }
 
     #[inline(always)]
-    fn build_hessian(&mut self, balances: &Balances) {
+    fn build_hessian<S: Simd>(&mut self, simd: S, balances: &Balances) {
+        let Self { c, weighted, factor, .. } = self;
         for (row, &column) in balances.live.iter().enumerate() {
-            for (weighted, (c, entry)) in
-                self.weighted.iter_mut().zip(self.c.iter().zip(balances.column(column)))
-            {
-                for l in 0..WIDTH {
-                    weighted[l] = c[l] * entry[l];
-                }
-            }
+            multiply(simd, weighted, c, balances.column(column));
+            let lanes = balances.lanes_of(column);
             for (place, &other) in balances.live[..=row].iter().enumerate() {
-                let mut sum = ZERO_LANE;
-                for (weighted, entry) in self.weighted.iter().zip(balances.column(other)) {
-                    for l in 0..WIDTH {
-                        sum[l] += weighted[l] * entry[l];
-                    }
-                }
-                self.factor.set(row, place, total(&sum));
+                let shared = lanes.and(balances.lanes_of(other));
+                factor.set(row, place, dot(simd, weighted, balances.column(other), shared));
             }
         }
     }
 
     /// Factorises the Hessian at the current point; returns the smallest pivot.
     #[inline(always)]
-    pub fn factorise_here(&mut self, balances: &Balances) -> f64 {
-        self.build_hessian(balances);
+    pub fn factorise_here<S: Simd>(&mut self, simd: S, balances: &Balances) -> f64 {
+        self.build_hessian(simd, balances);
         self.factor.factorise()
     }
 
     /// Takes one step. Returns false when no step along a descent direction helps any more.
     #[inline(always)]
-    fn search(&mut self, balances: &Balances, k: &[Lane], y: &mut [f64]) -> bool {
+    fn search<S: Simd>(&mut self, simd: S, balances: &Balances, k: &[Lane], y: &mut [f64]) -> bool {
         let m = balances.live.len();
         let mut slope = 0.0;
         for logarithmic in [true, false] {
@@ -279,14 +276,14 @@ impl Minimiser {
         if slope.is_nan() || slope >= 0.0 {
             return false;
         }
-        let mut length = self.longest_step(balances);
+        let mut length = self.longest_step(simd, balances);
         let mut trial = std::mem::take(&mut self.trial);
         let mut helped = false;
         for _ in 0..80 {
             for ((trial, y), step) in trial.iter_mut().zip(&*y).zip(&self.step) {
                 *trial = y + length * step;
             }
-            self.evaluate(balances, k, &trial);
+            self.evaluate(simd, balances, k, &trial);
             let there = self.slope(balances);
             if there.is_finite() && there <= 0.5 * slope.abs() {
                 y.copy_from_slice(&trial);
@@ -297,7 +294,7 @@ impl Minimiser {
         }
         self.trial = trial;
         if !helped {
-            self.evaluate(balances, k, y);
+            self.evaluate(simd, balances, k, y);
         }
         helped
     }
@@ -310,15 +307,16 @@ impl Minimiser {
 
     /// Full step unless a species would leap past what its components can hold.
     #[inline(always)]
-    fn longest_step(&self, balances: &Balances) -> f64 {
+    fn longest_step<S: Simd>(&self, simd: S, balances: &Balances) -> f64 {
         let farthest = self.step.iter().fold(0.0f64, |max, step| max.max(step.abs()));
         let mut length = if farthest > FARTHEST { FARTHEST / farthest } else { 1.0 };
         let mut shortest = [length; WIDTH];
         for q in 0..balances.species_lanes() {
-            let mut rise = ZERO_LANE;
+            let mut rise = [ZERO_LANE];
             for (&column, &step) in balances.live.iter().zip(&self.step) {
-                add_scaled(&mut rise, step, &balances.column(column)[q]);
+                add_scaled(simd, &mut rise, step, &balances.column(column)[q..=q]);
             }
+            let rise = rise[0];
             let (cap, exponent) = (&self.cap[q], &self.exponent[q]);
             for l in 0..WIDTH {
                 let capped = larger(cap[l] - exponent[l], 0.0) + 2.0;
@@ -334,14 +332,32 @@ impl Minimiser {
     }
 }
 
+/// A minimisation with the widest instructions of the processor at hand.
+struct Descent<'a> {
+    minimiser: &'a mut Minimiser,
+    balances: &'a Balances,
+    k: &'a [Lane],
+    y: &'a mut [f64],
+    patience: bool,
+}
+
+impl pulp::WithSimd for Descent<'_> {
+    type Output = Outcome;
+
+    #[inline(always)]
+    fn with_simd<S: Simd>(self, simd: S) -> Outcome {
+        self.minimiser.descend(simd, self.balances, self.k, self.y, self.patience)
+    }
+}
+
 /// k + Σ ν y of eight species.
 #[inline(always)]
-fn exponents(balances: &Balances, k: &[Lane], y: &[f64], q: usize) -> Lane {
-    let mut exponent = k[q];
+fn exponents<S: Simd>(simd: S, balances: &Balances, k: &[Lane], y: &[f64], q: usize) -> Lane {
+    let mut exponent = [k[q]];
     for (&column, &y) in balances.live.iter().zip(y) {
-        add_scaled(&mut exponent, y, &balances.column(column)[q]);
+        add_scaled(simd, &mut exponent, y, &balances.column(column)[q..=q]);
     }
-    exponent
+    exponent[0]
 }
 
 #[inline(always)]
@@ -367,6 +383,7 @@ mod tests {
             balances.set(row, column, 1.0);
         }
         balances.totals = vec![0.01, 0.02];
+        balances.survey();
         let mut k = vec![[f64::NEG_INFINITY; WIDTH]];
         for (row, value) in [0.0, 0.0, 18.0 * std::f64::consts::LN_10].into_iter().enumerate() {
             put(&mut k, row, value);

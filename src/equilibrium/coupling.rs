@@ -7,7 +7,8 @@
 use super::activity::{self, Coefficients};
 use super::balances::Balances;
 use super::convex::Minimiser;
-use super::lanes::{Lane, WIDTH, ZERO_LANE, put, total};
+use super::lanes::{Lane, WIDTH, ZERO_LANE, dot, multiply, put};
+use pulp::Simd;
 use super::layout::Layout;
 use super::problem::Problem;
 
@@ -129,8 +130,8 @@ impl Coupling {
 
     /// The sums of given concentrations, into the buffer `found`; the counter-ion's sign settles `whole`.
     #[inline(always)]
-    fn gather(&mut self, c: &[Lane]) {
-        let gap = dot(&self.charge, c);
+    fn gather<S: Simd>(&mut self, simd: S, c: &[Lane]) {
+        let gap = dot(simd, &self.charge, c, 0..c.len());
         self.buffers.found.clear();
         for (sum, weights) in self.weights.iter().enumerate() {
             let (cations, anions) = self.counter[sum];
@@ -140,7 +141,7 @@ impl Coupling {
                     whole[l] = weight[l] + per_gap * charge[l];
                 }
             }
-            self.buffers.found.push(dot(&self.whole[sum], c));
+            self.buffers.found.push(dot(simd, &self.whole[sum], c, 0..c.len()));
         }
     }
 
@@ -178,7 +179,7 @@ impl Coupling {
         if self.sums.is_empty() {
             return 0.0;
         }
-        self.gather(c);
+        self.gather(pulp::Scalar::new(), c);
         self.gap()
     }
 
@@ -196,9 +197,21 @@ impl Coupling {
 
     /// Newton's method on balances and sums together, from `y`. Leaves the last point behind whether it came to rest
     /// or not; counts its steps into `steps`.
-    #[inline(always)]
     pub fn rest(
         &mut self,
+        problem: &Problem,
+        balances: &Balances,
+        minimiser: &mut Minimiser,
+        y: &mut [f64],
+        steps: &mut usize,
+    ) -> Rest {
+        pulp::Arch::new().dispatch(Settling { coupling: self, problem, balances, minimiser, y, steps })
+    }
+
+    #[inline(always)]
+    fn iterate<S: Simd>(
+        &mut self,
+        simd: S,
         problem: &Problem,
         balances: &Balances,
         minimiser: &mut Minimiser,
@@ -217,9 +230,9 @@ impl Coupling {
                     k[l] += minus[l];
                 }
             }
-            minimiser.evaluate(balances, &k, y);
+            minimiser.evaluate(simd, balances, &k, y);
             self.buffers.k = k;
-            self.gather(&minimiser.c);
+            self.gather(simd, &minimiser.c);
             let (balance, sums) = (minimiser.residual(balances), self.gap());
             let residual = if balance > sums { balance } else { sums };
             if residual <= TOLERANCE || (residual <= ACCEPTED && residual >= 0.25 * best) {
@@ -231,7 +244,7 @@ impl Coupling {
                 return Rest::NotReached;
             }
             *steps += 1;
-            if minimiser.factorise_here(balances) < LEAST_PIVOT || !self.step(balances, minimiser, y) {
+            if minimiser.factorise_here(simd, balances) < LEAST_PIVOT || !self.step(simd, balances, minimiser, y) {
                 return Rest::NotReached;
             }
         }
@@ -240,7 +253,7 @@ impl Coupling {
 
     /// One step; false when it is no number.
     #[inline(always)]
-    fn step(&mut self, balances: &Balances, minimiser: &Minimiser, y: &mut [f64]) -> bool {
+    fn step<S: Simd>(&mut self, simd: S, balances: &Balances, minimiser: &Minimiser, y: &mut [f64]) -> bool {
         self.respond();
         let (m, count, c) = (balances.live.len(), self.sums.len(), &minimiser.c);
         let Self { buffers, response, whole, sums, .. } = self;
@@ -251,24 +264,24 @@ impl Coupling {
         minimiser.factor.solve(step);
         across.resize_with(count, Vec::new);
         for (column, response) in across.iter_mut().zip(&*response) {
-            multiply(weighted, response, c);
+            multiply(simd, weighted, response, c);
             column.clear();
-            column.extend(balances.live.iter().map(|&live| dot(weighted, balances.column(live))));
+            column.extend(balances.live.iter().map(|&live| dot(simd, weighted, balances.column(live), balances.lanes_of(live))));
             minimiser.factor.solve(column);
         }
         let width = count + 1;
         schur.clear();
         schur.resize(count * width, 0.0);
         for sum in 0..count {
-            multiply(weighted, &whole[sum], c);
+            multiply(simd, weighted, &whole[sum], c);
             let row = &mut schur[sum * width..(sum + 1) * width];
             row[count] = found[sum] - sums[sum];
             for (entry, response) in row.iter_mut().zip(&*response) {
-                *entry = -dot(weighted, response);
+                *entry = -dot(simd, weighted, response, 0..c.len());
             }
             row[sum] += 1.0;
             for (place, &live) in balances.live.iter().enumerate() {
-                let share = dot(weighted, balances.column(live));
+                let share = dot(simd, weighted, balances.column(live), balances.lanes_of(live));
                 for (entry, column) in row.iter_mut().zip(&*across) {
                     *entry += share * column[place];
                 }
@@ -300,6 +313,25 @@ impl Coupling {
             *value += share * schur[sum * width + count];
         }
         true
+    }
+}
+
+/// The iteration with the widest instructions of the processor at hand.
+struct Settling<'a> {
+    coupling: &'a mut Coupling,
+    problem: &'a Problem<'a>,
+    balances: &'a Balances,
+    minimiser: &'a mut Minimiser,
+    y: &'a mut [f64],
+    steps: &'a mut usize,
+}
+
+impl pulp::WithSimd for Settling<'_> {
+    type Output = Rest;
+
+    #[inline(always)]
+    fn with_simd<S: Simd>(self, simd: S) -> Rest {
+        self.coupling.iterate(simd, self.problem, self.balances, self.minimiser, self.y, self.steps)
     }
 }
 
@@ -335,24 +367,4 @@ fn eliminate(rows: &mut [f64], count: usize) -> bool {
         }
     }
     true
-}
-
-#[inline(always)]
-fn multiply(to: &mut [Lane], a: &[Lane], b: &[Lane]) {
-    for (to, (a, b)) in to.iter_mut().zip(a.iter().zip(b)) {
-        for l in 0..WIDTH {
-            to[l] = a[l] * b[l];
-        }
-    }
-}
-
-#[inline(always)]
-fn dot(a: &[Lane], b: &[Lane]) -> f64 {
-    let mut sum = ZERO_LANE;
-    for (a, b) in a.iter().zip(b) {
-        for l in 0..WIDTH {
-            sum[l] += a[l] * b[l];
-        }
-    }
-    total(&sum)
 }

@@ -4,6 +4,7 @@ use super::LN_10;
 use super::balances::Balances;
 use super::error::EquilibriumError;
 use super::problem::Problem;
+use super::system::System;
 
 /// Which parts of the system take part, and the balances over them. Prepared once for all problems of one shape.
 #[derive(Clone, Debug, Default)]
@@ -98,8 +99,9 @@ impl Layout {
             column_of[component] = Some(column);
         }
         let occurs = |terms: &[(usize, f64)]| terms.iter().all(|&(i, _)| present[i]);
-        let species: Vec<usize> =
+        let mut species: Vec<usize> =
             (0..system.species.len()).filter(|&j| occurs(&system.species[j].components)).collect();
+        gather(system, &mut species[columns.len()..]);
         let solids: Vec<usize> = (0..system.solids.len())
             .filter(|&k| problem.may_form[k] && occurs(&system.solids[k].components))
             .collect();
@@ -167,4 +169,22 @@ impl Layout {
         to.clear();
         to.extend(self.column_of.iter().map(|column| column.map_or(absent, |column| x[column])));
     }
+}
+
+/// Puts species of the same components side by side, by their rarest component first, so that most columns have entries
+/// in few lanes only.
+fn gather(system: &System, species: &mut [usize]) {
+    let mut count = vec![0usize; system.components.len()];
+    for &j in &*species {
+        for &(i, _) in &system.species[j].components {
+            count[i] += 1;
+        }
+    }
+    let key = |j: usize| {
+        let mut parts: Vec<(usize, usize)> =
+            system.species[j].components.iter().map(|&(i, _)| (count[i], i)).collect();
+        parts.sort_unstable();
+        parts
+    };
+    species.sort_by_cached_key(|&j| key(j));
 }

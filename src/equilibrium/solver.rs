@@ -209,7 +209,7 @@ fn rest(
     iterations: &mut usize,
 ) -> bool {
     let Stage { balances, y, .. } = stage;
-    pulp::Arch::new().dispatch(|| coupling.rest(problem, balances, minimiser, y, iterations)) == Rest::Reached
+    coupling.rest(problem, balances, minimiser, y, iterations) == Rest::Reached
 }
 
 /// What is known of the ionic strength: I(c(I)) is above I at the low end and below it at the high one.

@@ -70,6 +70,7 @@ impl Stage {
         }
         let order = |(solid, _): &(usize, usize)| solids.iter().position(|known| known == solid);
         self.active.sort_by_key(order);
+        self.origin.survey();
         self.balances.copy_from(&self.origin);
         self.holders.clone_from(&self.balances.live);
         self.y.clear();
@@ -105,7 +106,7 @@ impl Stage {
     /// A start from nothing: the unknowns become the species that hold the matter.
     pub fn start(&mut self, fixed: &Fixed, start: &mut Start) {
         self.refresh(fixed);
-        pulp::Arch::new().dispatch(|| start.find(&self.balances, &self.k, &mut self.y));
+        start.find(&self.balances, &self.k, &mut self.y);
         if start.holders != self.holders {
             self.turn.order.clear();
             self.turn.order.extend_from_slice(&start.holders);
@@ -150,7 +151,7 @@ impl Stage {
     }
 
     fn descend(&mut self, minimiser: &mut Minimiser, patience: bool) -> Outcome {
-        pulp::Arch::new().dispatch(|| minimiser.minimise(&self.balances, &self.k, &mut self.y, patience))
+        minimiser.minimise(&self.balances, &self.k, &mut self.y, patience)
     }
 
     /// Makes the most concentrated independent species the unknowns. Returns false when they are already.
@@ -191,7 +192,7 @@ impl Stage {
             holders[place] = species;
             missing -= 1;
             y[place] = balances.value(species, y) - balances.offset(species);
-            pulp::Arch::new().dispatch(|| balances.pivot(column, species));
+            balances.pivot(column, species);
         }
         if *holders == self.holders {
             return false;
@@ -201,6 +202,7 @@ impl Stage {
                 *holder = column;
             }
         }
+        balances.survey();
         std::mem::swap(&mut self.balances, balances);
         std::mem::swap(&mut self.y, y);
         std::mem::swap(&mut self.holders, holders);

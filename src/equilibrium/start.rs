@@ -7,7 +7,8 @@
 //! nearly all of each component, and Newton's method has only the rest to do.
 
 use super::balances::Balances;
-use super::lanes::{Lane, WIDTH, ZERO_LANE, at};
+use super::lanes::{Lane, WIDTH, ZERO_LANE, at, eliminate, largest};
+use pulp::Simd;
 
 /// ln units by which a species may exceed its cap when the walk ends.
 const CLOSE_ENOUGH: f64 = 1.5;
@@ -31,8 +32,12 @@ pub(super) struct Start {
 impl Start {
     /// Finds the species that hold the matter. Afterwards `y` holds ln a of the live columns of `balances`.
     /// The bare component of a column is the species of the same number.
-    #[inline(always)]
     pub fn find(&mut self, balances: &Balances, k: &[Lane], y: &mut [f64]) {
+        pulp::Arch::new().dispatch(Walk { start: self, balances, k, y });
+    }
+
+    #[inline(always)]
+    fn walk<S: Simd>(&mut self, simd: S, balances: &Balances, k: &[Lane], y: &mut [f64]) {
         let (lanes, bare) = (balances.species_lanes(), balances.live.as_slice());
         self.tableau.copy_from(balances);
         self.holders.clear();
@@ -48,20 +53,20 @@ impl Start {
             // The bare component starts at its cap: its own excess is then nought.
             let column = bare[place];
             let own = at(&self.excess, column);
-            eliminate(&mut self.excess, self.tableau.column(column), own);
+            eliminate(simd, &mut self.excess, own, self.tableau.column(column), 0.0);
         }
         for place in 0..bare.len() {
             let column = bare[place];
             if self.tableau.totals[column] < 0.0
                 && let Some(species) = self.reversed(column)
             {
-                self.exchange(place, species);
+                self.exchange(simd, place, species);
             }
         }
         for _ in 0..PATIENCE * bare.len() {
-            let Some(species) = self.most_excessive() else { break };
+            let Some(species) = self.most_excessive(simd) else { break };
             let Some(place) = self.first_used_up(species) else { break };
-            self.exchange(place, species);
+            self.exchange(simd, place, species);
         }
         self.unknowns(k, y);
     }
@@ -106,14 +111,8 @@ impl Start {
     }
 
     #[inline(always)]
-    fn most_excessive(&self) -> Option<usize> {
-        let mut highest = [CLOSE_ENOUGH; WIDTH];
-        for excess in &self.excess {
-            for l in 0..WIDTH {
-                highest[l] = if excess[l] > highest[l] { excess[l] } else { highest[l] };
-            }
-        }
-        let highest = highest.iter().fold(CLOSE_ENOUGH, |a, &b| if b > a { b } else { a });
+    fn most_excessive<S: Simd>(&self, simd: S) -> Option<usize> {
+        let highest = largest(simd, &self.excess, CLOSE_ENOUGH);
         if highest <= CLOSE_ENOUGH {
             return None;
         }
@@ -137,11 +136,11 @@ impl Start {
     }
 
     #[inline(always)]
-    fn exchange(&mut self, place: usize, species: usize) {
+    fn exchange<S: Simd>(&mut self, simd: S, place: usize, species: usize) {
         let column = self.tableau.live[place];
         let own = at(&self.excess, species);
-        self.tableau.pivot(column, species);
-        eliminate(&mut self.excess, self.tableau.column(column), own);
+        self.tableau.pivot_here(simd, column, species);
+        eliminate(simd, &mut self.excess, own, self.tableau.column(column), 0.0);
         self.holders[place] = species;
     }
 
@@ -164,12 +163,19 @@ impl Start {
     }
 }
 
-/// Brings a holder's excess to nought, with the share that each species has in it.
-#[inline(always)]
-fn eliminate(excess: &mut [Lane], share: &[Lane], own: f64) {
-    for (excess, share) in excess.iter_mut().zip(share) {
-        for l in 0..WIDTH {
-            excess[l] -= own * share[l];
-        }
+/// A walk with the widest instructions of the processor at hand.
+struct Walk<'a> {
+    start: &'a mut Start,
+    balances: &'a Balances,
+    k: &'a [Lane],
+    y: &'a mut [f64],
+}
+
+impl pulp::WithSimd for Walk<'_> {
+    type Output = ();
+
+    #[inline(always)]
+    fn with_simd<S: Simd>(self, simd: S) {
+        self.start.walk(simd, self.balances, self.k, self.y);
     }
 }

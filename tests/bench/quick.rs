@@ -2,7 +2,8 @@ mod systems;
 use bathwright::equilibrium::Solver;
 use std::time::Instant;
 fn main() {
-    for (m, n) in [(8usize, 80usize), (12, 150), (20, 400)] {
+    let only: Option<usize> = std::env::var("ONLY").ok().and_then(|n| n.parse().ok());
+    for (m, n) in [(8usize, 80usize), (12, 150), (20, 400)].into_iter().filter(|(m, _)| only.is_none_or(|o| o == *m)) {
         let count = 400;
         let cases: Vec<_> = (0..count).map(|s| systems::random_case(m, n, s)).collect();
         let mut times: Vec<(f64, usize, u64)> = Vec::new();
