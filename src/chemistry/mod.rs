@@ -7,6 +7,7 @@
 mod constant;
 mod error;
 mod formula;
+mod interaction;
 mod library;
 mod notation;
 mod potential;
@@ -18,6 +19,7 @@ mod solid_record;
 pub use constant::{Basis, Component, ComponentKind, Constant, Convention};
 pub use error::ChemistryError;
 pub use formula::Formula;
+pub use interaction::{Epsilon, EpsilonOrigin, EpsilonRule, Interaction, Interactions, Ions, ModelNumber};
 pub use library::{Library, Origin, OwnConstants, Solid, Species};
 pub use notation::{pretty, pretty_reaction};
 pub use potential::{Couple, Potentials, ReferenceElectrode};
