@@ -64,6 +64,17 @@ pub struct Species {
     pub constant: usize,
 }
 
+/// A gas over the bath; ln of its partial pressure in bar is Σ chain ln K + Σ coefficient · ln a over components.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Gas {
+    /// Name, ending in "(g)".
+    pub token: String,
+    /// Components and constants it is made of.
+    pub formation: Formation,
+    /// Index of the constant that defined it.
+    pub constant: usize,
+}
+
 /// A solid with its dissolution resolved to components.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Solid {
@@ -95,6 +106,8 @@ pub struct Library {
     pub constants: Vec<LibraryConstant>,
     /// Species in solution beyond the bare components.
     pub species: Vec<Species>,
+    /// Gases.
+    pub gases: Vec<Gas>,
     /// Solids.
     pub solids: Vec<Solid>,
 }
@@ -131,9 +144,12 @@ macro_rules! reaction_files {
     };
 }
 
+/// How the token of a gas ends.
+const GAS_ENDING: &str = "(g)";
+
 const COMPONENTS: &str = include_str!("../../assets/constants/components.ron");
 const SOLIDS: &str = include_str!("../../assets/constants/solids.ron");
-const REACTIONS: [(&str, &str); 16] = reaction_files!(
+const REACTIONS: [(&str, &str); 17] = reaction_files!(
     "water_and_acids.ron",
     "hydrolysis.ron",
     "edta.ron",
@@ -150,6 +166,7 @@ const REACTIONS: [(&str, &str); 16] = reaction_files!(
     "phosphates.ron",
     "phosphonates.ron",
     "inorganic_ligands.ron",
+    "gases.ron",
 );
 
 static BUILT_IN: LazyLock<Arc<Library>> = LazyLock::new(|| {
@@ -275,7 +292,13 @@ impl Library {
             .map(|(index, constant)| (index, constant.record.reaction.as_str(), &constant.reaction))
             .collect();
         let defined = resolve(&tokens, &entries)?;
-        let species: Vec<Species> = defined
+        let (gases, dissolved): (Vec<_>, Vec<_>) =
+            defined.into_iter().partition(|d| d.token.ends_with(GAS_ENDING));
+        let gases = gases
+            .into_iter()
+            .map(|d| Gas { token: d.token, formation: d.formation, constant: d.constant })
+            .collect();
+        let species: Vec<Species> = dissolved
             .into_iter()
             .map(|d| Species {
                 charge: charge_of(&d.token),
@@ -284,7 +307,7 @@ impl Library {
                 constant: d.constant,
             })
             .collect();
-        let mut library = Library { components, constants, species, solids: Vec::new() };
+        let mut library = Library { components, constants, species, gases, solids: Vec::new() };
         for (record, origin) in solids {
             library.add_solid(record, origin)?;
         }
@@ -347,13 +370,19 @@ impl Library {
         })
     }
 
-    /// How a component or species is made of components.
+    /// A gas by its token.
+    pub fn gas(&self, token: &str) -> Option<&Gas> {
+        self.gases.iter().find(|gas| gas.token == token)
+    }
+
+    /// How a component, species or gas is made of components.
     pub fn formation(&self, token: &str) -> Option<Formation> {
         if let Some(index) = self.component(token) {
             let components = std::collections::BTreeMap::from([(index, 1.0)]);
             return Some(Formation { components, ..Formation::default() });
         }
-        self.species.iter().find(|species| species.token == token).map(|species| species.formation.clone())
+        let species = self.species.iter().find(|species| species.token == token);
+        species.map(|s| &s.formation).or_else(|| self.gas(token).map(|gas| &gas.formation)).cloned()
     }
 
     /// Index of the hydrogen ion, when the library has one.
@@ -419,6 +448,20 @@ mod tests {
                 .map(|(&index, count)| count * charge_of(&library.components[index].token))
                 .sum();
             assert!((charge - species.charge).abs() < 1e-9, "{}", species.token);
+        }
+    }
+
+    #[test]
+    fn gases_resolve_to_components_and_stay_apart_from_dissolved_species() {
+        let library = Library::built_in();
+        assert!(library.species.iter().all(|species| !species.token.ends_with("(g)")));
+        let carbon_dioxide = library.gas("CO2(g)").unwrap();
+        let (carbonate, proton) = (library.component("CO3-2").unwrap(), library.proton().unwrap());
+        assert_eq!(carbon_dioxide.formation.components, [(proton, 2.0), (carbonate, 1.0)].into());
+        assert_eq!(carbon_dioxide.formation.chain.len(), 3);
+        assert_eq!(carbon_dioxide.formation.chain[&carbon_dioxide.constant], -1.0);
+        for token in ["NH3(g)", "SO2(g)", "HCN(g)", "H2S(g)"] {
+            assert!(library.gas(token).is_some(), "{token}");
         }
     }
 

@@ -20,7 +20,7 @@ pub use constant::{Basis, Component, ComponentKind, Constant, Convention};
 pub use error::ChemistryError;
 pub use formula::Formula;
 pub use interaction::{Epsilon, EpsilonOrigin, EpsilonRule, Interaction, Interactions, Ions, ModelNumber};
-pub use library::{Library, Origin, OwnConstants, Solid, Species};
+pub use library::{Gas, Library, Origin, OwnConstants, Solid, Species};
 pub use notation::{pretty, pretty_reaction};
 pub use potential::{Couple, Potentials, ReferenceElectrode};
 pub use product::{Assay, Catalogue, Evidence, Form, PriceRange, Product, Role};
