@@ -144,7 +144,6 @@ fn citrate_holds_iron_in_acid_cleaning_where_the_hydroxide_would_fall_out() {
 /// Ammoniated citric acid of 3 % holds iron, mostly as iron(III) once air or nitrite was blown in, at pH 9 to 9.5
 /// in the copper-removal stage of boiler cleaning: common practice, several grams per litre.
 #[test]
-#[ignore = "known discrepancy: the library's iron(III) citrates stop at one lost proton per metal, so all iron falls out above pH 8"]
 fn citrate_holds_iron_at_ph_nine_in_boiler_cleaning() {
     let bath = library_bath("Fe+3: 0.05 mol/L, Cit-3: 0.156 mol/L, NH3: 0.6 mol/L, NO3-: 0.15 mol/L");
     let solved = solve(&bath, Some(9.0));
