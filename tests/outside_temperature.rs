@@ -188,3 +188,19 @@ fn carbonated_rain_follows_from_the_gas_constants() {
     let ph = -0.5 * (both + 4.2e-4_f64.log10());
     assert!((ph - 5.6).abs() < 0.05, "{ph}");
 }
+
+/// F. J. Millero, Geochim. Cosmochim. Acta 59 (1995) 661, at zero salinity (function read as above), 0 to 45 °C.
+#[test]
+fn silicic_acid_follows_its_function_from_0_to_45_degrees() {
+    follows("H4SiO4 = H+ + H3SiO4-", &[0.0, 10.0, 35.0, 45.0], 0.03, |t| {
+        (117.385 - 8904.2 / t - 19.334 * t.ln()) / LN_10
+    });
+}
+
+/// R. O. Fournier & J. J. Rowe, Am. Mineral. 62 (1977) 1052: log10 of SiO2 in mg/kg = 4.52 − 731/T (from memory).
+#[test]
+fn silica_gel_dissolves_as_in_geothermal_water_from_25_to_95_degrees() {
+    follows("SiO2(am) + 2 H2O = H4SiO4", &[25.0, 50.0, 75.0, 95.0], 0.05, |t| {
+        4.52 - 731.0 / t - (60_084.0_f64).log10()
+    });
+}

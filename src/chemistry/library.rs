@@ -149,7 +149,7 @@ const GAS_ENDING: &str = "(g)";
 
 const COMPONENTS: &str = include_str!("../../assets/constants/components.ron");
 const SOLIDS: &str = include_str!("../../assets/constants/solids.ron");
-const REACTIONS: [(&str, &str); 17] = reaction_files!(
+const REACTIONS: [(&str, &str); 18] = reaction_files!(
     "water_and_acids.ron",
     "hydrolysis.ron",
     "edta.ron",
@@ -166,6 +166,7 @@ const REACTIONS: [(&str, &str); 17] = reaction_files!(
     "phosphates.ron",
     "phosphonates.ron",
     "inorganic_ligands.ron",
+    "silicate.ron",
     "gases.ron",
 );
 
