@@ -85,7 +85,7 @@ fn coefficients_of_bath_salts_agree_with_recalled_tables() {
 /// published coefficients already hold the pair NaCO3⁻, so without it the standard comes out.
 #[test]
 fn the_carbonate_standard_comes_out_when_sodium_pairs_are_not_counted_twice() {
-    assert!(Interactions::built_in().contained_pairs().any(|pair| pair == "NaCO3-"));
+    assert!(Interactions::built_in().contained_species().any(|pair| pair == "NaCO3-"));
     let (carbonate, sodium, ionic_strength) = (0.025, 0.075, 0.1);
     let gamma_log = |anion: &str, z: f64| -z * z * debye(ionic_strength) + epsilon("Na+", anion) * sodium;
     let hydrolysis: f64 = 2e-4; // carbonate + water gives as much bicarbonate and hydroxide

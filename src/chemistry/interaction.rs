@@ -50,9 +50,9 @@ pub struct Interaction {
     pub epsilon: f64,
     /// Standard uncertainty, kg/mol.
     pub sigma: f64,
-    /// Token of the ion pair that this ε already accounts for: it must not be explicit beside it.
+    /// Tokens of species that this ε already accounts for: they must not be explicit beside it.
     #[serde(default)]
-    pub contains: Option<String>,
+    pub contains: Vec<String>,
     /// Seen, recalled or computed.
     pub basis: Basis,
     /// Where it is published.
@@ -196,8 +196,8 @@ impl Interactions {
     }
 
     /// Species that the published coefficients already account for; with this model they are left out.
-    pub fn contained_pairs(&self) -> impl Iterator<Item = &str> {
-        self.pairs.iter().filter_map(|pair| pair.contains.as_deref())
+    pub fn contained_species(&self) -> impl Iterator<Item = &str> {
+        self.pairs.iter().flat_map(|pair| &pair.contains).map(String::as_str)
     }
 }
 
@@ -228,7 +228,7 @@ mod tests {
         let strangers = ["Li+", "Ba+2", "ClO4-", "SCN-", "NO2-"];
         let table = Interactions::built_in();
         let tokens = table.pairs.iter().flat_map(|pair| [pair.cation.as_str(), pair.anion.as_str()]);
-        for token in tokens.chain(table.contained_pairs()).filter(|token| !strangers.contains(token)) {
+        for token in tokens.chain(table.contained_species()).filter(|token| !strangers.contains(token)) {
             assert!(library.formation(token).is_some(), "{token} is not in the library");
         }
     }

@@ -1,10 +1,11 @@
 //! The constants library: components, species and solids, resolved from the built-in files and the project's own.
 
 use super::constant::{Component, Constant};
+use super::own_constants::OwnConstants;
 use super::resolve::{Formation, resolve};
 use super::solid_record::SolidRecord;
 use super::{ChemistryError, Formula, PROTON, Reaction, charge_of};
-use serde::{Deserialize, Serialize};
+use serde::Deserialize;
 use std::sync::{Arc, LazyLock};
 
 /// Where a record comes from.
@@ -14,41 +15,6 @@ pub enum Origin {
     BuiltIn,
     /// The project file.
     Own,
-}
-
-/// Components, reactions and solids that a project brings along; they add to the library or replace its values.
-#[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
-#[serde(deny_unknown_fields)]
-pub struct OwnConstants {
-    /// Use the built-in library besides; off, the project describes its whole chemistry itself.
-    #[serde(default = "yes")]
-    pub library: bool,
-    /// Own components.
-    #[serde(default)]
-    pub components: Vec<Component>,
-    /// Own reactions in solution. One that writes a built-in equilibrium again replaces its value.
-    #[serde(default)]
-    pub reactions: Vec<Constant>,
-    /// Own solids; one with the token of a built-in solid replaces it.
-    #[serde(default)]
-    pub solids: Vec<SolidRecord>,
-}
-
-fn yes() -> bool {
-    true
-}
-
-impl Default for OwnConstants {
-    fn default() -> Self {
-        Self { library: true, components: Vec::new(), reactions: Vec::new(), solids: Vec::new() }
-    }
-}
-
-impl OwnConstants {
-    /// Whether nothing of one's own is in it.
-    pub fn is_default(&self) -> bool {
-        *self == Self::default()
-    }
 }
 
 /// A species in solution that is not a bare component.
