@@ -39,7 +39,7 @@ pub use problem::{Equilibrium, Problem};
 pub use solver::Solver;
 pub use system::{Constants, SolidEntry, SpeciesEntry, System, SystemParts, Terms};
 pub use temperature::{ConstantModel, TemperatureBasis};
-pub use water::{debye_huckel_a, log10_kw};
+pub use water::{debye_huckel_a, debye_huckel_a_molal, density_kg_l, log10_kw, permittivity};
 
 /// Gas constant, J/(mol K) (exact, SI 2019).
 pub const GAS_CONSTANT: f64 = 8.314_462_618;
