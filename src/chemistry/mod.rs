@@ -35,3 +35,7 @@ pub const PROTON: &str = "H+";
 pub const HYDROXIDE: &str = "OH-";
 /// Token of water, which is the solvent and never a component.
 pub const WATER: &str = "H2O";
+/// Token of the sodium ion.
+pub const SODIUM: &str = "Na+";
+/// Token of the chloride ion.
+pub const CHLORIDE: &str = "Cl-";

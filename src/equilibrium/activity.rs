@@ -62,7 +62,7 @@ impl ActivityModel {
     }
 
     /// The same for a given Debye–Hückel slope A (log10) and kilograms of water per litre.
-    fn per_square(self, a: f64, water_kg_l: f64, ionic_strength: f64) -> (f64, f64) {
+    pub(super) fn per_square(self, a: f64, water_kg_l: f64, ionic_strength: f64) -> (f64, f64) {
         match self {
             ActivityModel::AsMeasured => (0.0, 0.0),
             ActivityModel::Davies => {
@@ -134,6 +134,18 @@ impl Coefficients {
     }
 }
 
+impl Coefficients {
+    /// A share of the correction.
+    pub fn times(self, share: f64) -> Self {
+        let times = |(value, slope): (f64, f64)| (share * value, share * slope);
+        Self {
+            per_square: times(self.per_square),
+            per_interaction: times(self.per_interaction),
+            per_salting: times(self.per_salting),
+        }
+    }
+}
+
 /// Number of sums that a problem's activity coefficients depend on.
 pub(super) fn sum_count(problem: &Problem) -> usize {
     match problem.constants.model {
@@ -178,15 +190,14 @@ pub(super) fn salting_out(problem: &Problem, species: usize) -> f64 {
     if with_salting { problem.system.interaction.salting_out[species] } else { 0.0 }
 }
 
-/// −ln γ of a species at given sums.
-pub(super) fn minus_ln_gamma(problem: &Problem, at: &Coefficients, sums: &[f64], species: usize) -> f64 {
-    let square = problem.system.species[species].charge.powi(2);
-    let class = class_sum(problem, species).map_or(0.0, |sum| sums[sum]);
-    square * at.per_square.0 + salting_out(problem, species) * at.per_salting.0 - at.per_interaction.0 * class
-}
-
 /// Derivative of −ln γ of a species by a sum.
-pub(super) fn response(problem: &Problem, at: &Coefficients, sums: &[f64], species: usize, sum: usize) -> f64 {
+pub(super) fn response(
+    problem: &Problem,
+    at: &Coefficients,
+    sums: &[f64],
+    species: usize,
+    sum: usize,
+) -> f64 {
     let class = class_sum(problem, species);
     if sum == 0 {
         let square = problem.system.species[species].charge.powi(2);

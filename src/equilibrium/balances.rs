@@ -124,9 +124,10 @@ impl Balances {
         let group = self.lanes_per_group();
         for (column, occupied) in self.occupied.iter_mut().enumerate() {
             let lanes = &self.columns[column * self.stride..column * self.stride + self.species_lanes];
-            *occupied = lanes.iter().enumerate().fold(0, |bits, (q, lane)| {
-                if *lane == ZERO_LANE { bits } else { bits | 1 << (q / group) }
-            });
+            *occupied = lanes
+                .iter()
+                .enumerate()
+                .fold(0, |bits, (q, lane)| if *lane == ZERO_LANE { bits } else { bits | 1 << (q / group) });
         }
     }
 
@@ -192,21 +193,16 @@ impl Balances {
         self.offset.copy_from_slice(&from.offset);
         self.totals.copy_from_slice(&from.totals);
         let mut rows = self.pivot_rows.chunks_exact(self.width.max(1));
-        let record = std::mem::take(&mut self.record);
-        for (done, event) in record.iter().enumerate() {
+        let mut totals = std::mem::take(&mut self.totals);
+        for (done, event) in self.record.iter().enumerate() {
             match *event {
                 Event::Turned(column) => {
-                    // Columns that went out later were still live then.
                     let Some(row) = rows.next() else { continue };
-                    let later = record[done..].iter().filter_map(|event| match event {
-                        Event::Saturated { column, .. } => Some(*column),
-                        Event::Turned(_) => None,
-                    });
-                    let factor = self.totals[column] / row[column];
-                    for i in self.live.iter().copied().chain(later).filter(|&i| i != column) {
-                        turn_total(&mut self.totals[i], factor, row[i]);
+                    let factor = totals[column] / row[column];
+                    for i in self.live_at(done).filter(|&i| i != column) {
+                        turn_total(&mut totals[i], factor, row[i]);
                     }
-                    self.totals[column] = factor;
+                    totals[column] = factor;
                 }
                 Event::Saturated { column, solid } => {
                     let value = ln_ks[solid] - at(&self.offset, self.solid_row(solid));
@@ -215,7 +211,16 @@ impl Balances {
                 }
             }
         }
-        self.record = record;
+        self.totals = totals;
+    }
+
+    /// The columns that were live before a step of the elimination: those that are, and those that went out since.
+    fn live_at(&self, step: usize) -> impl Iterator<Item = usize> + '_ {
+        let later = self.record[step..].iter().filter_map(|event| match event {
+            Event::Saturated { column, .. } => Some(*column),
+            Event::Turned(_) => None,
+        });
+        self.live.iter().copied().chain(later)
     }
 
     /// Takes a column out whose value stands in the constant parts already.

@@ -8,9 +8,9 @@ use super::activity::{self, Coefficients};
 use super::balances::Balances;
 use super::convex::Minimiser;
 use super::lanes::{Lane, WIDTH, ZERO_LANE, dot, multiply, put};
-use pulp::Simd;
 use super::layout::Layout;
 use super::problem::Problem;
+use pulp::Simd;
 
 /// Relative residual of balances and sums at which both are at their end in double precision.
 const TOLERANCE: f64 = 1e-14;
@@ -31,8 +31,9 @@ pub(super) struct Coupling {
     pub sums: Vec<f64>,
     /// −ln γ of each species.
     pub minus_ln_gamma: Vec<Lane>,
-    /// Coefficients at the current ionic strength.
-    pub coefficients: Coefficients,
+    /// Share of the full correction, below one only on the way to it.
+    pub share: f64,
+    coefficients: Coefficients,
     weights: Vec<Vec<Lane>>,
     counter: Vec<(f64, f64)>,
     charge: Vec<Lane>,
@@ -89,6 +90,7 @@ impl Coupling {
         self.sums = vec![0.0; count];
         self.minus_ln_gamma = vec![ZERO_LANE; lanes];
         self.coefficients = Coefficients::default();
+        self.share = 1.0;
     }
 
     /// Whether a layout was prepared for the model of a problem.
@@ -111,7 +113,7 @@ impl Coupling {
     #[inline(always)]
     pub fn refresh(&mut self, problem: &Problem) {
         let Some(&strength) = self.sums.first() else { return };
-        self.coefficients = Coefficients::at(problem.constants, strength);
+        self.coefficients = Coefficients::at(problem.constants, strength).times(self.share);
         let Coefficients { per_square, per_interaction, per_salting } = self.coefficients;
         for (q, minus) in self.minus_ln_gamma.iter_mut().enumerate() {
             for l in 0..WIDTH {
@@ -121,8 +123,7 @@ impl Coupling {
         if self.sums.len() > 1 {
             for (place, class) in self.class.iter().enumerate() {
                 if let Some(sum) = class {
-                    self.minus_ln_gamma[place / WIDTH][place % WIDTH] -=
-                        per_interaction.0 * self.sums[*sum];
+                    self.minus_ln_gamma[place / WIDTH][place % WIDTH] -= per_interaction.0 * self.sums[*sum];
                 }
             }
         }
@@ -136,7 +137,8 @@ impl Coupling {
         for (sum, weights) in self.weights.iter().enumerate() {
             let (cations, anions) = self.counter[sum];
             let per_gap = if gap > 0.0 { anions } else { -cations };
-            for (whole, (weight, charge)) in self.whole[sum].iter_mut().zip(weights.iter().zip(&self.charge)) {
+            for (whole, (weight, charge)) in self.whole[sum].iter_mut().zip(weights.iter().zip(&self.charge))
+            {
                 for l in 0..WIDTH {
                     whole[l] = weight[l] + per_gap * charge[l];
                 }
@@ -244,7 +246,9 @@ impl Coupling {
                 return Rest::NotReached;
             }
             *steps += 1;
-            if minimiser.factorise_here(simd, balances) < LEAST_PIVOT || !self.step(simd, balances, minimiser, y) {
+            if minimiser.factorise_here(simd, balances) < LEAST_PIVOT
+                || !self.step(simd, balances, minimiser, y)
+            {
                 return Rest::NotReached;
             }
         }
@@ -266,7 +270,12 @@ impl Coupling {
         for (column, response) in across.iter_mut().zip(&*response) {
             multiply(simd, weighted, response, c);
             column.clear();
-            column.extend(balances.live.iter().map(|&live| dot(simd, weighted, balances.column(live), balances.lanes_of(live))));
+            column.extend(
+                balances
+                    .live
+                    .iter()
+                    .map(|&live| dot(simd, weighted, balances.column(live), balances.lanes_of(live))),
+            );
             minimiser.factor.solve(column);
         }
         let width = count + 1;

@@ -196,7 +196,10 @@ mod tests {
 
     #[test]
     fn the_exponential_ends_in_zero_and_infinity() {
-        assert_eq!(exp(&[-800.0, f64::NEG_INFINITY, 800.0, 0.0, 1.0, -1.0, 0.5, 2.0])[..4], [0.0, 0.0, f64::INFINITY, 1.0]);
+        assert_eq!(
+            exp(&[-800.0, f64::NEG_INFINITY, 800.0, 0.0, 1.0, -1.0, 0.5, 2.0])[..4],
+            [0.0, 0.0, f64::INFINITY, 1.0]
+        );
         assert!(exp(&[f64::NAN; WIDTH])[0].is_nan());
     }
 }

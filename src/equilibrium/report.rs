@@ -38,12 +38,8 @@ pub(super) fn fill(
         let product: f64 = solid.components.iter().map(|&(i, nu)| nu * result.ln_a[i]).sum();
         result.ln_saturation.push(if possible { product - ln_ks } else { f64::NEG_INFINITY });
     }
-    result.charge_gap = layout
-        .charge
-        .iter()
-        .enumerate()
-        .map(|(place, charge)| charge * at(&minimiser.c, place))
-        .sum();
+    result.charge_gap =
+        layout.charge.iter().enumerate().map(|(place, charge)| charge * at(&minimiser.c, place)).sum();
     certify(problem, layout, result);
 }
 
@@ -93,17 +89,12 @@ fn certify(problem: &Problem, layout: &Layout, result: &mut Equilibrium) {
         let found = if sum == 0 { result.ionic_strength } else { gathered(problem, layout, result, sum) };
         sums = sums.max((found - used).abs() / result.ionic_strength.max(1e-12));
     }
-    result.certificate = Certificate {
-        balance_residual: worst,
-        kkt_residual: unmet,
-        activity_residual: sums,
-        iterations: 0,
-    };
+    result.certificate =
+        Certificate { balance_residual: worst, kkt_residual: unmet, activity_residual: sums, iterations: 0 };
 }
 
 fn gathered(problem: &Problem, layout: &Layout, result: &Equilibrium, sum: usize) -> f64 {
-    let ions: f64 =
-        layout.species.iter().map(|&j| activity::weight(problem, sum, j) * result.c[j]).sum();
+    let ions: f64 = layout.species.iter().map(|&j| activity::weight(problem, sum, j) * result.c[j]).sum();
     let (cations, anions) = activity::counter_weight(problem, sum);
     let gap = result.charge_gap;
     ions + if gap > 0.0 { anions * gap } else { -cations * gap }

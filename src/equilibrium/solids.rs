@@ -44,6 +44,7 @@ pub(super) fn settle(
             Exchange::Unbounded { solid, excess } => return Err(Unsettled::Unbounded { solid, excess }),
             Exchange::Made => {
                 let active: Vec<usize> = amounts.iter().map(|&(solid, _)| solid).collect();
+                stage.weigh(fixed, &minimiser.c);
                 stage.prepare(fixed, &active, x);
             }
         }
@@ -95,12 +96,7 @@ fn largest_amount(fixed: &Fixed, solid: usize) -> f64 {
 
 /// Moves the amounts towards those found. When one would turn negative the move stops where the first reaches
 /// zero and that solid leaves. Returns whether one left.
-fn retreat(
-    amounts: &mut Vec<(usize, f64)>,
-    found: &[f64],
-    sizes: &[f64],
-    barred: &mut Vec<usize>,
-) -> bool {
+fn retreat(amounts: &mut Vec<(usize, f64)>, found: &[f64], sizes: &[f64], barred: &mut Vec<usize>) -> bool {
     let negative = |n: f64, size: f64| n < -1e-13 * size || (n < 0.0 && n > -1e-300);
     if !found.iter().zip(sizes).any(|(&n, &size)| negative(n, size)) {
         for (amount, &n) in amounts.iter_mut().zip(found) {

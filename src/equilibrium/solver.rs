@@ -11,7 +11,13 @@ use super::stage::{Fixed, Stage};
 use super::start::Start;
 
 /// Rounds of solids and activity coefficients.
-const MAX_ROUNDS: usize = 200;
+const MAX_ROUNDS: usize = 60;
+/// Share of the correction of the first step by degrees, and the smallest step.
+const FIRST_DEGREE: f64 = 0.2;
+const LEAST_DEGREE: f64 = 1e-3;
+/// Residual of the original balances from which refinement is worth a step.
+const REFINED: f64 = 1e-11;
+const MAX_REFINEMENTS: usize = 3;
 /// Distance of the sums from their concentrations, in units of the ionic strength, that counts as rest.
 const AT_REST: f64 = 1e-13;
 /// Distance up to which a round that no longer gains is accepted.
@@ -58,7 +64,11 @@ impl Solver {
     ///
     /// # Errors
     /// As [`Solver::solve`]; the result is then meaningless.
-    pub fn solve_into(&mut self, problem: &Problem, result: &mut Equilibrium) -> Result<(), EquilibriumError> {
+    pub fn solve_into(
+        &mut self,
+        problem: &Problem,
+        result: &mut Equilibrium,
+    ) -> Result<(), EquilibriumError> {
         check(problem)?;
         let mut warm = std::mem::take(&mut self.warm);
         if !self.layout.load(problem)? || !self.coupling.serves(problem) {
@@ -73,11 +83,15 @@ impl Solver {
         if matches!(found, Err(Failure::NotConverged(_))) {
             found = self.begin(problem, &mut iterations);
         }
+        if matches!(found, Err(Failure::NotConverged(_))) && problem.constants.model.corrects() {
+            found = self.by_degrees(problem, &mut iterations);
+            self.coupling.share = 1.0;
+        }
         match found {
             Ok(()) => {
                 self.warm = true;
-                let Self { layout, coupling, minimiser, x, amounts, .. } = self;
-                report::fill(problem, layout, coupling, minimiser, (x, amounts), result);
+                self.report(problem, result);
+                self.refine(problem, result, &mut iterations);
                 result.certificate.iterations = iterations;
                 Ok(())
             }
@@ -94,6 +108,31 @@ impl Solver {
         }
     }
 
+    fn report(&self, problem: &Problem, result: &mut Equilibrium) {
+        let Self { layout, coupling, minimiser, x, amounts, .. } = self;
+        report::fill(problem, layout, coupling, minimiser, (x, amounts), result);
+    }
+
+    /// Where rounding shows in the original balances, the unknowns were chosen by sizes that the solution doesn't have:
+    /// they are chosen once more by those it has.
+    fn refine(&mut self, problem: &Problem, result: &mut Equilibrium, iterations: &mut usize) {
+        for _ in 0..MAX_REFINEMENTS {
+            if result.certificate.balance_residual <= REFINED {
+                return;
+            }
+            let Self { layout, coupling, minimiser, stage, x, .. } = self;
+            let fixed = fixed(layout, coupling);
+            let active: Vec<usize> = stage.active.iter().map(|&(solid, _)| solid).collect();
+            stage.weigh(&fixed, &minimiser.c);
+            stage.prepare(&fixed, &active, x);
+            if self.settle_and_rest(problem, iterations).is_err() {
+                self.warm = false;
+                return;
+            }
+            self.report(problem, result);
+        }
+    }
+
     /// From nothing.
     fn begin(&mut self, problem: &Problem, iterations: &mut usize) -> Result<(), Failure> {
         self.coupling.guess(problem);
@@ -106,6 +145,7 @@ impl Solver {
             problem.held[component].unwrap_or_else(|| free.ln())
         }));
         let fixed = fixed(layout, coupling);
+        stage.forget();
         stage.prepare(&fixed, &[], x);
         stage.start(&fixed, start);
         self.settle_and_rest(problem, iterations)
@@ -119,11 +159,41 @@ impl Solver {
         if problem.constants.model.corrects() && rest(problem, coupling, stage, minimiser, iterations) {
             stage.ln_activities(x);
             barred.clear();
-            if matches!(exchange(&fixed(layout, coupling), stage, minimiser, amounts, barred), Exchange::None) {
+            if matches!(exchange(&fixed(layout, coupling), stage, minimiser, amounts, barred), Exchange::None)
+            {
                 return Ok(());
             }
         }
         self.settle_and_rest(problem, iterations)
+    }
+
+    /// From no correction to the full one by degrees, for baths so strong that the way from a guess was lost.
+    fn by_degrees(&mut self, problem: &Problem, iterations: &mut usize) -> Result<(), Failure> {
+        self.coupling.share = 0.0;
+        self.begin(problem, iterations)?;
+        let mut degree = FIRST_DEGREE;
+        while self.coupling.share < 1.0 {
+            let (sums, y, share) = (self.coupling.sums.clone(), self.stage.y.clone(), self.coupling.share);
+            let active = self.stage.active.clone();
+            self.coupling.share = (share + degree).min(1.0);
+            match self.settle_and_rest(problem, iterations) {
+                Ok(()) => degree *= 1.5,
+                Err(Failure::NotConverged(residual)) if degree < LEAST_DEGREE => {
+                    return Err(Failure::NotConverged(residual));
+                }
+                Err(Failure::NotConverged(_)) => {
+                    degree *= 0.25;
+                    self.coupling.share = share;
+                    self.coupling.sums = sums;
+                    if self.stage.active == active && self.stage.y.len() == y.len() {
+                        self.stage.y = y;
+                    }
+                    self.settle_and_rest(problem, iterations)?;
+                }
+                Err(unbounded) => return Err(unbounded),
+            }
+        }
+        Ok(())
     }
 
     /// Settles the solids at given activity coefficients, brings these to rest with the concentrations, and looks at the
@@ -155,6 +225,7 @@ impl Solver {
                     }
                     Exchange::Made => {
                         let active: Vec<usize> = amounts.iter().map(|&(solid, _)| solid).collect();
+                        stage.weigh(&fixed, &minimiser.c);
                         stage.prepare(&fixed, &active, x);
                         if !bracket.holds(coupling.sums[0]) {
                             bracket = Bracket::default();

@@ -41,6 +41,8 @@ pub(super) struct Stage {
     origin: Balances,
     /// The species that stands for each live column: the bare component (of the same number) where it wasn't turned.
     holders: Vec<usize>,
+    /// Reciprocal size of the balance of each column, as far as it is known.
+    weight: Vec<f64>,
     turn: Turn,
 }
 
@@ -60,9 +62,13 @@ impl Stage {
     pub fn prepare(&mut self, fixed: &Fixed, solids: &[usize], x: &[f64]) {
         self.origin.copy_from(fixed.base);
         self.active.clear();
+        if self.weight.len() != fixed.column_weight.len() {
+            self.weight.clear();
+            self.weight.extend_from_slice(fixed.column_weight);
+        }
         // The scarcest component of a solid tells its amount most exactly. All solids are looked at before each
         // elimination, so that the order in which they formed doesn't decide which balances are mixed.
-        while let Some((solid, column)) = self.scarcest(fixed, solids) {
+        while let Some((solid, column)) = self.scarcest(solids) {
             let row = self.origin.solid_row(solid);
             self.origin.pivot(column, row);
             self.origin.saturate(column, solid, fixed.ln_ks[solid]);
@@ -78,12 +84,12 @@ impl Stage {
     }
 
     /// The solid and the column of the next elimination: the largest entry in units of the totals.
-    fn scarcest(&self, fixed: &Fixed, solids: &[usize]) -> Option<(usize, usize)> {
+    fn scarcest(&self, solids: &[usize]) -> Option<(usize, usize)> {
         let mut best = (0.0, None);
         for &solid in solids.iter().filter(|&&solid| self.active.iter().all(|&(known, _)| known != solid)) {
             let row = self.origin.solid_row(solid);
-            if let Some(column) = self.origin.largest(row, |column| fixed.column_weight[column]) {
-                let entry = self.origin.get(row, column).abs() * fixed.column_weight[column];
+            if let Some(column) = self.origin.largest(row, |column| self.weight[column]) {
+                let entry = self.origin.get(row, column).abs() * self.weight[column];
                 if entry >= best.0 {
                     best = (entry, Some((solid, column)));
                 }
@@ -103,6 +109,21 @@ impl Stage {
         }
     }
 
+    /// Weighs the balances by what they really sum up, which tells their rounding better than a total that may be a
+    /// difference, as that of H⁺ is.
+    pub fn weigh(&mut self, fixed: &Fixed, c: &[Lane]) {
+        self.weight.clear();
+        self.weight.extend(fixed.base.totals.iter().enumerate().map(|(column, total)| {
+            let entries = fixed.base.column(column).as_flattened().iter().zip(c.as_flattened());
+            1.0 / (total.abs() + entries.map(|(entry, c)| (entry * c).abs()).sum::<f64>()).max(1e-300)
+        }));
+    }
+
+    /// Forgets what is known of the sizes of the balances.
+    pub fn forget(&mut self) {
+        self.weight.clear();
+    }
+
     /// A start from nothing: the unknowns become the species that hold the matter.
     pub fn start(&mut self, fixed: &Fixed, start: &mut Start) {
         self.refresh(fixed);
@@ -111,7 +132,7 @@ impl Stage {
             self.turn.order.clear();
             self.turn.order.extend_from_slice(&start.holders);
             self.turn.order.sort_by(|&a, &b| start.amount(b).total_cmp(&start.amount(a)));
-            self.turn_to_order(fixed);
+            self.turn_to_order();
         }
     }
 
@@ -160,14 +181,15 @@ impl Stage {
         order.clear();
         order.extend(0..self.balances.species_count());
         order.sort_unstable_by(|&a, &b| at(c, b).total_cmp(&at(c, a)).then(a.cmp(&b)));
-        self.turn_to_order(fixed)
+        self.weigh(fixed, c);
+        self.turn_to_order()
     }
 
     /// Makes the first independent species of the order the unknowns. Returns false when they are already.
     ///
     /// Always from the components anew: totals that were turned twice would carry the rounding of both turns.
-    fn turn_to_order(&mut self, fixed: &Fixed) -> bool {
-        let Turn { balances, order, y, holders } = &mut self.turn;
+    fn turn_to_order(&mut self) -> bool {
+        let (Turn { balances, order, y, holders }, weight) = (&mut self.turn, &self.weight);
         balances.copy_from(&self.origin);
         y.clear();
         // ln a of the live components: their rows are those of the bare species.
@@ -183,7 +205,7 @@ impl Stage {
             let mut best = (0.0, None);
             for (place, &column) in balances.live.iter().enumerate() {
                 let entry = balances.get(species, column).abs();
-                let weighted = entry * fixed.column_weight[column];
+                let weighted = entry * weight[column];
                 if holders[place] == NOT_YET && entry > 1e-9 && weighted > 0.0 && weighted >= best.0 {
                     best = (weighted, Some((place, column)));
                 }
@@ -223,7 +245,7 @@ impl Stage {
             return Vec::new();
         }
         // Each balance in units of its own size, so that no pivot mixes a scarce component with a plentiful one.
-        let weight = |r: usize| fixed.column_weight[self.active[r].1];
+        let weight = |r: usize| self.weight[self.active[r].1];
         let matrix = DMatrix::from_fn(size, size, |r, s| {
             weight(r) * fixed.solid_rows[self.active[s].0][self.active[r].1]
         });

@@ -2,7 +2,7 @@
 
 use super::activity::{ActivityModel, Interaction};
 use super::temperature::ConstantModel;
-use super::water::debye_huckel_a;
+use super::water::{debye_huckel_a, debye_huckel_a_molal, density_kg_l};
 use std::ops::Deref;
 use std::sync::Arc;
 use std::sync::atomic::{AtomicU64, Ordering};
@@ -121,8 +121,11 @@ impl SystemParts {
             ln_beta: self.species.iter().map(|species| sum(&species.chain, &ln_k)).collect(),
             ln_ks: self.solids.iter().map(|solid| sum(&solid.chain, &ln_k)).collect(),
             model,
-            slope_a: debye_huckel_a(temperature_k),
-            water_kg_l: 1.0,
+            slope_a: match model {
+                ActivityModel::IonInteraction => debye_huckel_a_molal(temperature_k),
+                _ => debye_huckel_a(temperature_k),
+            },
+            water_kg_l: density_kg_l(temperature_k),
         }
     }
 

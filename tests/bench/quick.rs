@@ -3,7 +3,9 @@ use bathwright::equilibrium::Solver;
 use std::time::Instant;
 fn main() {
     let only: Option<usize> = std::env::var("ONLY").ok().and_then(|n| n.parse().ok());
-    for (m, n) in [(8usize, 80usize), (12, 150), (20, 400)].into_iter().filter(|(m, _)| only.is_none_or(|o| o == *m)) {
+    for (m, n) in
+        [(8usize, 80usize), (12, 150), (20, 400)].into_iter().filter(|(m, _)| only.is_none_or(|o| o == *m))
+    {
         let count = 400;
         let cases: Vec<_> = (0..count).map(|s| systems::random_case(m, n, s)).collect();
         let mut times: Vec<(f64, usize, u64)> = Vec::new();
@@ -28,7 +30,15 @@ fn main() {
         let total = all.elapsed().as_secs_f64() / 21.0 / count as f64 * 1e6;
         times.sort_by(|a, b| a.0.total_cmp(&b.0));
         let q = |f: f64| times[((times.len() - 1) as f64 * f) as usize];
-        println!("{m}x{n}: mean {total:.1} µs failed {failed} min {:?} q25 {:?} med {:?} q75 {:?} q90 {:?} max {:?}", q(0.0), q(0.25), q(0.5), q(0.75), q(0.9), q(1.0));
+        println!(
+            "{m}x{n}: mean {total:.1} µs failed {failed} min {:?} q25 {:?} med {:?} q75 {:?} q90 {:?} max {:?}",
+            q(0.0),
+            q(0.25),
+            q(0.5),
+            q(0.75),
+            q(0.9),
+            q(1.0)
+        );
         // warm walk
         let mut wt = 0.0;
         let mut wn = 0;
@@ -37,7 +47,9 @@ fn main() {
             solver.reset();
             let mut p = case.problem();
             p.totals = &totals;
-            if solver.solve(&p).is_err() { continue; }
+            if solver.solve(&p).is_err() {
+                continue;
+            }
             for _ in 0..40 {
                 totals[1] *= 1.02;
                 totals[m - 1] *= 0.99;
@@ -47,7 +59,9 @@ fn main() {
                 let r = solver.solve(&p);
                 wt += start.elapsed().as_secs_f64();
                 wn += 1;
-                if r.is_err() { println!("warm failure"); }
+                if r.is_err() {
+                    println!("warm failure");
+                }
             }
         }
         println!("   warm mean {:.2} µs", wt / wn as f64 * 1e6);

@@ -57,7 +57,12 @@ pub fn random_case(components: usize, species: usize, seed: u64) -> Case {
     let mut ln_beta = vec![0.0; components];
     for i in 0..components {
         let token = format!("X{i}");
-        system.species.push(SpeciesEntry { token, charge: 0.0, components: vec![(i, 1.0)], chain: Vec::new() });
+        system.species.push(SpeciesEntry {
+            token,
+            charge: 0.0,
+            components: vec![(i, 1.0)],
+            chain: Vec::new(),
+        });
     }
     let mut push = |components: Vec<(usize, f64)>, log_beta: f64| {
         let token = format!("S{}", system.species.len());
@@ -84,6 +89,12 @@ pub fn random_case(components: usize, species: usize, seed: u64) -> Case {
     if dice.whole(0, 1) == 1 {
         totals[0] = -totals[0];
     }
-    let constants = Constants { ln_beta, ln_ks: Vec::new(), model: ActivityModel::AsMeasured, slope_a: 0.5105, water_kg_l: 1.0 };
+    let constants = Constants {
+        ln_beta,
+        ln_ks: Vec::new(),
+        model: ActivityModel::AsMeasured,
+        slope_a: 0.5105,
+        water_kg_l: 1.0,
+    };
     Case { held: vec![None; components], may_form: Vec::new(), system: system.into(), constants, totals }
 }
