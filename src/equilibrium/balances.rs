@@ -28,6 +28,8 @@ pub(super) struct Balances {
     pub live: Vec<usize>,
     /// Which groups of lanes of each column have entries among the species, a bit each.
     occupied: Vec<u64>,
+    /// Largest Σ |ν| of a species.
+    order: f64,
     /// What was done to the totals and the constant parts, so that it can be done to others.
     record: Vec<Event>,
     pivot_rows: Vec<f64>,
@@ -63,6 +65,7 @@ impl Balances {
             totals: vec![0.0; width],
             live: (0..width).collect(),
             occupied: vec![0; width],
+            order: 0.0,
             record: Vec::new(),
             pivot_rows: Vec::new(),
         };
@@ -73,7 +76,7 @@ impl Balances {
     /// Becomes a copy of another without giving up its buffers.
     pub fn copy_from(&mut self, other: &Self) {
         (self.width, self.species) = (other.width, other.species);
-        (self.species_lanes, self.stride) = (other.species_lanes, other.stride);
+        (self.species_lanes, self.stride, self.order) = (other.species_lanes, other.stride, other.order);
         self.columns.clone_from(&other.columns);
         self.offset.clone_from(&other.offset);
         self.totals.clone_from(&other.totals);
@@ -122,6 +125,12 @@ impl Balances {
     /// Looks anew where the columns have entries; to be called when they have changed.
     pub fn survey(&mut self) {
         let group = self.lanes_per_group();
+        self.order = 0.0;
+        for &column in &self.live {
+            let lanes = &self.columns[column * self.stride..column * self.stride + self.species_lanes];
+            let largest = lanes.as_flattened().iter().fold(0.0f64, |max, entry| max.max(entry.abs()));
+            self.order += largest;
+        }
         for (column, occupied) in self.occupied.iter_mut().enumerate() {
             let lanes = &self.columns[column * self.stride..column * self.stride + self.species_lanes];
             *occupied = lanes
@@ -129,6 +138,11 @@ impl Balances {
                 .enumerate()
                 .fold(0, |bits, (q, lane)| if *lane == ZERO_LANE { bits } else { bits | 1 << (q / group) });
         }
+    }
+
+    /// Bound of Σ |ν| over the live columns of any species, as of the last survey.
+    pub fn order(&self) -> f64 {
+        self.order
     }
 
     fn lanes_per_group(&self) -> usize {

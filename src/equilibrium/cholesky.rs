@@ -1,16 +1,16 @@
-//! In-place Cholesky factor of a small symmetric matrix, scaled to a unit diagonal.
+//! In-place factor L D Lᵀ of a small symmetric matrix: Cholesky's without its square roots.
 
 /// Lower triangle of a matrix, then of its factor.
 #[derive(Clone, Debug, Default)]
 pub(super) struct Cholesky {
     size: usize,
     entries: Vec<f64>,
-    scale: Vec<f64>,
-    /// Reciprocals of the factor's diagonal.
+    /// Reciprocals of the diagonal D.
     reciprocal: Vec<f64>,
+    row: Vec<f64>,
 }
 
-/// Pivots that rounding has eaten are lifted to this, which only shortens the step.
+/// Pivots that rounding has eaten are lifted to this share of their diagonal entry, which only shortens the step.
 const LEAST_PIVOT: f64 = 1e-15;
 
 impl Cholesky {
@@ -18,8 +18,8 @@ impl Cholesky {
     pub fn resize(&mut self, size: usize) {
         self.size = size;
         self.entries.resize(size * size, 0.0);
-        self.scale.resize(size, 0.0);
         self.reciprocal.resize(size, 0.0);
+        self.row.resize(size, 0.0);
     }
 
     /// Sets an entry with `column` ≤ `row`.
@@ -28,34 +28,34 @@ impl Cholesky {
         self.entries[row * self.size + column] = value;
     }
 
-    /// Factorises; returns the smallest pivot met.
+    /// Factorises; returns the smallest pivot as a share of its diagonal entry.
     #[inline(always)]
     pub fn factorise(&mut self) -> f64 {
         let m = self.size;
-        for i in 0..m {
-            let diagonal = self.entries[i * m + i];
-            self.scale[i] = if diagonal > 0.0 { 1.0 / diagonal.sqrt() } else { 0.0 };
-        }
         let mut smallest: f64 = 1.0;
         for i in 0..m {
             let (done, rest) = self.entries.split_at_mut(i * m);
-            let row = &mut rest[..=i];
-            let mut squares = 0.0;
+            let (factor, scaled) = (&mut rest[..=i], &mut self.row[..i]);
+            let diagonal = factor[i];
+            let mut pivot = diagonal;
             for j in 0..i {
-                let other = &done[j * m..j * m + j];
-                let mut value = row[j] * self.scale[i] * self.scale[j];
-                for (a, b) in row[..j].iter().zip(other) {
+                let mut value = factor[j];
+                for (a, b) in scaled[..j].iter().zip(&done[j * m..j * m + j]) {
                     value -= a * b;
                 }
-                let value = value * self.reciprocal[j];
-                row[j] = value;
-                squares += value * value;
+                scaled[j] = value;
+                let share = value * self.reciprocal[j];
+                factor[j] = share;
+                pivot -= value * share;
             }
-            let pivot = row[i] * self.scale[i] * self.scale[i] - squares;
-            smallest = smallest.min(pivot);
-            let root = pivot.max(LEAST_PIVOT).sqrt();
-            row[i] = root;
-            self.reciprocal[i] = 1.0 / root;
+            // A row of zeros is an unknown that nothing depends on: it stays where it is.
+            self.reciprocal[i] = if diagonal > 0.0 {
+                smallest = smallest.min(pivot / diagonal);
+                1.0 / pivot.max(LEAST_PIVOT * diagonal)
+            } else {
+                smallest = smallest.min(diagonal);
+                0.0
+            };
         }
         smallest
     }
@@ -65,21 +65,20 @@ impl Cholesky {
     pub fn solve(&self, b: &mut [f64]) {
         let m = self.size;
         for i in 0..m {
-            let mut value = b[i] * self.scale[i];
+            let mut value = b[i];
             for (factor, known) in self.entries[i * m..i * m + i].iter().zip(&b[..i]) {
                 value -= factor * known;
             }
-            b[i] = value * self.reciprocal[i];
+            b[i] = value;
+        }
+        for (b, reciprocal) in b.iter_mut().zip(&self.reciprocal) {
+            *b *= reciprocal;
         }
         for i in (0..m).rev() {
-            let value = b[i] * self.reciprocal[i];
-            b[i] = value;
+            let value = b[i];
             for (earlier, factor) in b[..i].iter_mut().zip(&self.entries[i * m..i * m + i]) {
                 *earlier -= factor * value;
             }
-        }
-        for (b, scale) in b.iter_mut().zip(&self.scale) {
-            *b *= scale;
         }
     }
 }

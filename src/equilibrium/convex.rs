@@ -48,6 +48,7 @@ pub(super) struct Minimiser {
     /// The scaled Hessian's factor.
     pub factor: Cholesky,
     cap: Vec<Lane>,
+    caps_known: bool,
     weighted: Vec<Lane>,
     plus: Vec<f64>,
     minus: Vec<f64>,
@@ -84,7 +85,7 @@ impl Minimiser {
         patience: bool,
     ) -> Outcome {
         self.resize(balances);
-        self.find_caps(balances);
+        self.caps_known = false;
         let mut outcome =
             Outcome { residual: f64::INFINITY, steps: 0, smallest_pivot: 1.0, converged: false };
         let (mut best, mut idle) = (f64::INFINITY, 0);
@@ -139,7 +140,9 @@ impl Minimiser {
                     continue;
                 }
                 let exponent = exponents(simd, balances, k, y, q);
-                let c = exp(&exponent);
+                let mut c = [ZERO_LANE];
+                exp(simd, &[exponent], &mut c);
+                let c = c[0];
                 for l in 0..WIDTH {
                     if entry[l] > 0.0 && exponent[l] > highest {
                         (highest, order) = (exponent[l], entry[l]);
@@ -196,10 +199,10 @@ impl Minimiser {
     #[inline(always)]
     pub fn evaluate<S: Simd>(&mut self, simd: S, balances: &Balances, k: &[Lane], y: &[f64]) {
         let Self { exponent, c, plus, minus, .. } = self;
-        for (q, (exponent, c)) in exponent.iter_mut().zip(&mut *c).enumerate() {
+        for (q, exponent) in exponent.iter_mut().enumerate() {
             *exponent = exponents(simd, balances, k, y, q);
-            *c = exp(exponent);
         }
+        exp(simd, exponent, c);
         for (place, &column) in balances.live.iter().enumerate() {
             (plus[place], minus[place]) =
                 both_sides(simd, balances.column(column), c, balances.lanes_of(column));
@@ -307,8 +310,15 @@ impl Minimiser {
 
     /// Full step unless a species would leap past what its components can hold.
     #[inline(always)]
-    fn longest_step<S: Simd>(&self, simd: S, balances: &Balances) -> f64 {
+    fn longest_step<S: Simd>(&mut self, simd: S, balances: &Balances) -> f64 {
         let farthest = self.step.iter().fold(0.0f64, |max, step| max.max(step.abs()));
+        if farthest * balances.order() <= 1.0 {
+            return 1.0;
+        }
+        if !self.caps_known {
+            self.find_caps(balances);
+            self.caps_known = true;
+        }
         let mut length = if farthest > FARTHEST { FARTHEST / farthest } else { 1.0 };
         let mut shortest = [length; WIDTH];
         for q in 0..balances.species_lanes() {

@@ -153,42 +153,80 @@ const TAYLOR: [f64; 12] = [
     1.0 / 2.0,
 ];
 
-/// eˣ of each number within one unit in the last place; zero where it would be subnormal.
+/// eˣ of each number within two units in the last place; zero where it would be subnormal.
 #[inline(always)]
-pub(super) fn exp(x: &Lane) -> Lane {
-    let (mut rest, mut scale) = (ZERO_LANE, ZERO_LANE);
-    for l in 0..WIDTH {
-        let clamped = if x[l] > LARGEST { LARGEST } else { x[l] };
-        let clamped = if clamped < SMALLEST { SMALLEST } else { clamped };
-        let rounded = clamped * std::f64::consts::LOG2_E + ROUND;
-        let power = rounded - ROUND;
-        rest[l] = (clamped - power * LN2_HIGH) - power * LN2_LOW;
-        scale[l] = f64::from_bits(rounded.to_bits().wrapping_add(1023) << 52);
-    }
-    let mut tail = [TAYLOR[0]; WIDTH];
-    for coefficient in &TAYLOR[1..] {
+pub(super) fn exp<S: Simd>(simd: S, x: &[Lane], to: &mut [Lane]) {
+    for (x, to) in x.iter().zip(&mut *to) {
+        let mut scale = ZERO_LANE;
         for l in 0..WIDTH {
-            tail[l] = tail[l] * rest[l] + coefficient;
+            let clamped = if x[l] > LARGEST { LARGEST } else { x[l] };
+            let clamped = if clamped < SMALLEST { SMALLEST } else { clamped };
+            let rounded = clamped * std::f64::consts::LOG2_E + ROUND;
+            scale[l] = f64::from_bits(rounded.to_bits().wrapping_add(1023) << 52);
         }
+        *to = scale;
     }
-    let mut result = ZERO_LANE;
-    for l in 0..WIDTH {
-        let value = (1.0 + (rest[l] + rest[l] * rest[l] * tail[l])) * scale[l];
-        let value = if x[l] > LARGEST { f64::INFINITY } else { value };
-        result[l] = if x[l] < SMALLEST { 0.0 } else { value };
+    let (smallest, largest) = (simd.splat_f64s(SMALLEST), simd.splat_f64s(LARGEST));
+    let (zero, infinity) = (simd.splat_f64s(0.0), simd.splat_f64s(f64::INFINITY));
+    let (round, one) = (simd.splat_f64s(ROUND), simd.splat_f64s(1.0));
+    let per_power = simd.splat_f64s(std::f64::consts::LOG2_E);
+    let (high, low) = (simd.splat_f64s(-LN2_HIGH), simd.splat_f64s(-LN2_LOW));
+    let taylor = TAYLOR.map(|coefficient| simd.splat_f64s(coefficient));
+    for (&x, to) in vectors::<S>(x).iter().zip(vectors_mut::<S>(to)) {
+        let clamped = simd.max_f64s(simd.min_f64s(x, largest), smallest);
+        let rounded = simd.add_f64s(simd.mul_f64s(clamped, per_power), round);
+        let power = simd.sub_f64s(rounded, round);
+        let rest = simd.mul_add_e_f64s(power, low, simd.mul_add_e_f64s(power, high, clamped));
+        // Pairs of terms at once, so that the processor has more than one chain to work on.
+        let square = simd.mul_f64s(rest, rest);
+        let pair = |i: usize| simd.mul_add_e_f64s(taylor[i], rest, taylor[i + 1]);
+        let mut tail = pair(0);
+        for i in [2, 4, 6, 8, 10] {
+            tail = simd.mul_add_e_f64s(tail, square, pair(i));
+        }
+        let value = simd.add_f64s(one, simd.mul_add_e_f64s(tail, square, rest));
+        let value = simd.mul_f64s(value, *to);
+        let value = simd.select_f64s(simd.greater_than_f64s(x, largest), infinity, value);
+        let value = simd.select_f64s(simd.less_than_f64s(x, smallest), zero, value);
+        // A number that is none stays none.
+        *to = simd.select_f64s(simd.equal_f64s(x, x), value, x);
     }
-    result
 }
 
 #[cfg(test)]
 mod tests {
     use super::*;
 
+    struct Exponential(Lane);
+
+    impl pulp::WithSimd for Exponential {
+        type Output = Lane;
+
+        #[inline(always)]
+        fn with_simd<S: Simd>(self, simd: S) -> Lane {
+            let mut to = [ZERO_LANE];
+            exp(simd, &[self.0], &mut to);
+            to[0]
+        }
+    }
+
+    fn exponential(x: Lane) -> Lane {
+        let plain = pulp::Scalar::new().vectorize(Exponential(x));
+        let wide = pulp::Arch::new().dispatch(Exponential(x));
+        for (plain, wide) in plain.iter().zip(&wide) {
+            assert!(
+                plain == wide || (plain - wide).abs() <= 4e-16 * wide || plain.is_nan(),
+                "{plain} {wide}"
+            );
+        }
+        wide
+    }
+
     #[test]
     fn the_exponential_is_within_two_units_in_the_last_place_over_the_whole_range() {
         for i in 0..200_000 {
             let x = -708.0 + 1417.0 * f64::from(i) / 200_000.0;
-            let lane = exp(&[x; WIDTH]);
+            let lane = exponential([x; WIDTH]);
             let gap = (lane[3] - x.exp()).abs() / x.exp();
             assert!(gap <= 2.0 * f64::EPSILON, "{x}: {gap}");
         }
@@ -197,9 +235,9 @@ mod tests {
     #[test]
     fn the_exponential_ends_in_zero_and_infinity() {
         assert_eq!(
-            exp(&[-800.0, f64::NEG_INFINITY, 800.0, 0.0, 1.0, -1.0, 0.5, 2.0])[..4],
+            exponential([-800.0, f64::NEG_INFINITY, 800.0, 0.0, 1.0, -1.0, 0.5, 2.0])[..4],
             [0.0, 0.0, f64::INFINITY, 1.0]
         );
-        assert!(exp(&[f64::NAN; WIDTH])[0].is_nan());
+        assert!(exponential([f64::NAN; WIDTH])[0].is_nan());
     }
 }

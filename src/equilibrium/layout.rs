@@ -128,6 +128,7 @@ impl Layout {
                 base.hold(column);
             }
         }
+        base.survey();
         Self {
             charge: species.iter().map(|&j| system.species[j].charge).collect(),
             ln_ks: vec![0.0; solids.len()],

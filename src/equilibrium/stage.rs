@@ -76,7 +76,9 @@ impl Stage {
         }
         let order = |(solid, _): &(usize, usize)| solids.iter().position(|known| known == solid);
         self.active.sort_by_key(order);
-        self.origin.survey();
+        if !self.active.is_empty() {
+            self.origin.survey();
+        }
         self.balances.copy_from(&self.origin);
         self.holders.clone_from(&self.balances.live);
         self.y.clear();
