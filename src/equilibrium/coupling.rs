@@ -115,11 +115,7 @@ impl Coupling {
         let Some(&strength) = self.sums.first() else { return };
         self.coefficients = Coefficients::at(problem.constants, strength).times(self.share);
         let Coefficients { per_square, per_interaction, per_salting } = self.coefficients;
-        for (q, minus) in self.minus_ln_gamma.iter_mut().enumerate() {
-            for l in 0..WIDTH {
-                minus[l] = self.square[q][l] * per_square.0 + self.salting[q][l] * per_salting.0;
-            }
-        }
+        combine(&mut self.minus_ln_gamma, (per_square.0, &self.square), (per_salting.0, &self.salting));
         if self.sums.len() > 1 {
             for (place, class) in self.class.iter().enumerate() {
                 if let Some(sum) = class {
@@ -150,11 +146,7 @@ impl Coupling {
     #[inline(always)]
     fn respond(&mut self) {
         let Coefficients { per_square, per_interaction, per_salting } = self.coefficients;
-        for (q, response) in self.response[0].iter_mut().enumerate() {
-            for l in 0..WIDTH {
-                response[l] = self.square[q][l] * per_square.1 + self.salting[q][l] * per_salting.1;
-            }
-        }
+        combine(&mut self.response[0], (per_square.1, &self.square), (per_salting.1, &self.salting));
         if self.sums.len() > 1 {
             for (place, class) in self.class.iter().enumerate() {
                 if let Some(sum) = *class {
@@ -322,6 +314,15 @@ impl Coupling {
             *value += share * schur[sum * width + count];
         }
         true
+    }
+}
+
+/// A linear combination of two rows.
+#[inline(always)]
+fn combine(to: &mut [Lane], (a, one): (f64, &[Lane]), (b, other): (f64, &[Lane])) {
+    let parts = one.as_flattened().iter().zip(other.as_flattened());
+    for (to, (one, other)) in to.as_flattened_mut().iter_mut().zip(parts) {
+        *to = a * one + b * other;
     }
 }
 

@@ -49,14 +49,12 @@ impl Start {
                 excess[l] = k[q][l] - self.cap[q][l];
             }
         }
-        for place in 0..bare.len() {
+        for &column in bare {
             // The bare component starts at its cap: its own excess is then nought.
-            let column = bare[place];
             let own = at(&self.excess, column);
             eliminate(simd, &mut self.excess, own, self.tableau.column(column), 0.0);
         }
-        for place in 0..bare.len() {
-            let column = bare[place];
+        for (place, &column) in bare.iter().enumerate() {
             if self.tableau.totals[column] < 0.0
                 && let Some(species) = self.reversed(column)
             {
