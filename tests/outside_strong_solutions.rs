@@ -8,7 +8,7 @@ fn solve(model: ActivityModel, contents: &[(&str, f64)], ph: f64) -> (System, Eq
     let library = Library::built_in();
     let mut present = vec![library.proton().expect("H+ is a component")];
     present.extend(contents.iter().map(|(token, _)| library.component(token).expect("a component")));
-    let system = assemble(&library, &present, model);
+    let system = assemble(library, &present, model);
     let constants = system.constants_at(298.15, model);
     let totals: Vec<f64> = std::iter::once(0.0)
         .chain(contents.iter().map(|(_, molality)| molality * constants.water_kg_l))
