@@ -1,5 +1,5 @@
-//! Water's ion product and the carbonate constants over temperature, and the Davies equation against measured and
-//! tabulated activity coefficients.
+//! Water's ion product over temperature, and the Davies equation against measured and tabulated activity
+//! coefficients.
 
 mod outside_common;
 
@@ -15,31 +15,6 @@ fn neutral_water_reads_half_the_measured_pkw_from_0_to_100_degrees() {
     {
         let neutral = solve_at(&bath, temperature, None).ph();
         close(&format!("pKw at {temperature} C"), 2.0 * neutral, pkw, 0.02);
-    }
-}
-
-/// Plummer & Busenberg, Geochim. Cosmochim. Acta 46 (1982) 1011: the functions of temperature for K1, K2 and
-/// calcite, read in the abstract (USGS publication 70011789). The program carries log K, enthalpy and a constant
-/// heat capacity at 25 °C instead. Tolerance: the authors' 0.02 for the acids everywhere and for calcite to 40
-/// °C; in the heat calcite's heat capacity is far from constant, and 0.1 is a quarter of what its enthalpy alone
-/// would miss by.
-#[test]
-fn carbonic_acid_and_calcite_follow_their_published_functions_of_temperature() {
-    let bath = library_bath("Ca+2: 1 mmol/L, CO3-2: 1 mmol/L");
-    let function =
-        |a: f64, b: f64, c: f64, d: f64, e: f64, t: f64| a + b * t + c / t + d * t.log10() + e / (t * t);
-    for (temperature, tolerance) in
-        [(0.0, 0.02), (15.0, 0.02), (25.0, 0.02), (40.0, 0.02), (60.0, 0.1), (90.0, 0.1)]
-    {
-        let t = temperature + 273.15;
-        let solved = solve_at(&bath, temperature, Some(8.0));
-        let k1 = function(-356.3094, -0.060_919_64, 21834.37, 126.8339, -1_684_915.0, t);
-        let k2 = function(-107.8871, -0.032_528_49, 5151.79, 38.925_61, -563_713.9, t);
-        let calcite = function(-171.9065, -0.077_993, 2839.319, 71.595, 0.0, t);
-        let pk2 = solved.log_beta("HCO3-");
-        close(&format!("pK2 at {temperature} C"), pk2, -k2, 0.02);
-        close(&format!("pK1 at {temperature} C"), solved.log_beta("CO2(aq)") - pk2, -k1, 0.02);
-        close(&format!("calcite at {temperature} C"), solved.log_ks("CaCO3(cr)"), calcite, tolerance);
     }
 }
 

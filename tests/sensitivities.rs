@@ -117,7 +117,7 @@ fn derivatives_agree_with_differences_on_two_hundred_random_systems() {
     assert!(with_solids > 20, "{with_solids}");
 }
 
-/// First order against 2,000 draws. The sample's own standard deviation is uncertain by 1/√(2·2000) = 1.6 %, and the
+/// First order against 10,000 draws. The sample's own standard deviation is uncertain by 1/√(2·10000) = 0.7 %, and the
 /// response is not quite linear over one σ; 10 % covers both where the constants that matter are not far off.
 #[test]
 fn first_order_uncertainty_agrees_with_sampling() {
@@ -135,7 +135,7 @@ fn first_order_uncertainty_agrees_with_sampling() {
     let mut dice = Dice::new(7);
     let mut normal = || -> f64 { (0..12).map(|_| dice.unit()).sum::<f64>() - 6.0 };
     let mut solver = Solver::new();
-    let draws = 2000;
+    let draws = 10_000;
     let mut values = Vec::with_capacity(draws);
     for _ in 0..draws {
         let shifts: Vec<f64> =

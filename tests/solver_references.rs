@@ -1,7 +1,9 @@
 //! The solver against independent solutions: `tests/reference/equilibria.ron`, made by `tests/reference/generate.py`
 //! with a homotopy in arbitrary-precision arithmetic, another method than the program's.
 
-use bathwright::equilibrium::{ActivityModel, Constants, Problem, SolidEntry, Solver, SpeciesEntry, System};
+use bathwright::equilibrium::{
+    ActivityModel, Constants, Problem, SolidEntry, Solver, SpeciesEntry, System, SystemParts,
+};
 use serde::Deserialize;
 
 #[derive(Deserialize)]
@@ -77,10 +79,10 @@ fn condition(note: &str) -> f64 {
 }
 
 fn build(reference: &Reference) -> (System, Constants, Vec<f64>, Vec<Option<f64>>) {
-    let mut system = System {
+    let mut system = SystemParts {
         components: reference.components.iter().map(|part| part.name.clone()).collect(),
         proton: reference.components.iter().position(|part| part.name == "H"),
-        ..System::default()
+        ..SystemParts::default()
     };
     let mut ln_beta = vec![0.0; reference.components.len()];
     for (i, part) in reference.components.iter().enumerate() {
@@ -103,13 +105,14 @@ fn build(reference: &Reference) -> (System, Constants, Vec<f64>, Vec<Option<f64>
     }
     let ln_ks = reference.solids.iter().map(|solid| number_ln(&solid.log10_ks)).collect();
     let model = if reference.davies_a.is_some() { ActivityModel::Davies } else { ActivityModel::AsMeasured };
-    let constants = Constants { ln_beta, ln_ks, model, slope_a: reference.davies_a.unwrap_or(0.51) };
+    let constants =
+        Constants { ln_beta, ln_ks, model, slope_a: reference.davies_a.unwrap_or(0.51), water_kg_l: 1.0 };
     let totals = reference.components.iter().map(|part| number(&part.total)).collect();
     let mut held = vec![None; reference.components.len()];
     for entry in &reference.held {
         held[entry.component] = Some(number_ln(&entry.log10_activity));
     }
-    (system, constants, totals, held)
+    (system.into(), constants, totals, held)
 }
 
 /// Gap in log10 beyond which two values differ; both absent is equal.

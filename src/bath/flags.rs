@@ -1,7 +1,7 @@
 //! What a result must be read with: model ranges, missing enthalpies, slow metals, numbers below measurement.
 
 use super::resolve::Bath;
-use crate::equilibrium::{ActivityModel, DAVIES_LIMIT, Equilibrium, TemperatureBasis};
+use crate::equilibrium::{ActivityModel, DAVIES_LIMIT, Equilibrium, ION_INTERACTION_LIMIT, TemperatureBasis};
 use crate::quantity::significant;
 
 /// A remark that must stand beside a result.
@@ -9,6 +9,8 @@ use crate::quantity::significant;
 pub enum Flag {
     /// The ionic strength is outside the range of the Davies equation.
     AboveDavies(f64),
+    /// The ionic strength is outside the range of the ion interaction coefficients.
+    AboveInteraction(f64),
     /// Constants are used as measured although the bath is far from their ionic strength.
     NotCorrected(f64),
     /// So many constants have no enthalpy and are used as they are at this temperature in °C.
@@ -29,6 +31,11 @@ impl std::fmt::Display for Flag {
             Flag::AboveDavies(i) => write!(
                 f,
                 "ionic strength {} mol/L is above the range of the Davies equation ({DAVIES_LIMIT}); activity coefficients are held at their value there",
+                significant(*i, 2)
+            ),
+            Flag::AboveInteraction(i) => write!(
+                f,
+                "ionic strength {} mol/L is above the {ION_INTERACTION_LIMIT} mol/kg that ion interaction is recommended for",
                 significant(*i, 2)
             ),
             Flag::NotCorrected(i) => write!(
@@ -65,6 +72,9 @@ pub fn flags(bath: &Bath, solution: &Equilibrium, temperature_c: f64) -> Vec<Fla
     let strength = solution.ionic_strength;
     match bath.project.activity {
         ActivityModel::Davies if strength > DAVIES_LIMIT => flags.push(Flag::AboveDavies(strength)),
+        ActivityModel::IonInteraction if strength > ION_INTERACTION_LIMIT => {
+            flags.push(Flag::AboveInteraction(strength));
+        }
         ActivityModel::AsMeasured if strength > 0.3 => flags.push(Flag::NotCorrected(strength)),
         _ => {}
     }

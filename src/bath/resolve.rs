@@ -149,7 +149,7 @@ impl Bath {
                 present.push(component);
             }
         }
-        let system = assemble(&library, &present);
+        let system = assemble(&library, &present, project.activity);
         let spread = |moles: &Moles| -> Vec<f64> {
             present.iter().map(|component| moles.get(component).copied().unwrap_or(0.0)).collect()
         };

@@ -1,10 +1,11 @@
 //! The constants library: components, species and solids, resolved from the built-in files and the project's own.
 
 use super::constant::{Component, Constant};
+use super::own_constants::OwnConstants;
 use super::resolve::{Formation, resolve};
 use super::solid_record::SolidRecord;
 use super::{ChemistryError, Formula, PROTON, Reaction, charge_of};
-use serde::{Deserialize, Serialize};
+use serde::Deserialize;
 use std::sync::{Arc, LazyLock};
 
 /// Where a record comes from.
@@ -16,41 +17,6 @@ pub enum Origin {
     Own,
 }
 
-/// Components, reactions and solids that a project brings along; they add to the library or replace its values.
-#[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
-#[serde(deny_unknown_fields)]
-pub struct OwnConstants {
-    /// Use the built-in library besides; off, the project describes its whole chemistry itself.
-    #[serde(default = "yes")]
-    pub library: bool,
-    /// Own components.
-    #[serde(default)]
-    pub components: Vec<Component>,
-    /// Own reactions in solution. One that writes a built-in equilibrium again replaces its value.
-    #[serde(default)]
-    pub reactions: Vec<Constant>,
-    /// Own solids; one with the token of a built-in solid replaces it.
-    #[serde(default)]
-    pub solids: Vec<SolidRecord>,
-}
-
-fn yes() -> bool {
-    true
-}
-
-impl Default for OwnConstants {
-    fn default() -> Self {
-        Self { library: true, components: Vec::new(), reactions: Vec::new(), solids: Vec::new() }
-    }
-}
-
-impl OwnConstants {
-    /// Whether nothing of one's own is in it.
-    pub fn is_default(&self) -> bool {
-        *self == Self::default()
-    }
-}
-
 /// A species in solution that is not a bare component.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Species {
@@ -58,6 +24,17 @@ pub struct Species {
     pub token: String,
     /// Charge number.
     pub charge: f64,
+    /// Components and constants it is made of.
+    pub formation: Formation,
+    /// Index of the constant that defined it.
+    pub constant: usize,
+}
+
+/// A gas over the bath; ln of its partial pressure in bar is Σ chain ln K + Σ coefficient · ln a over components.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Gas {
+    /// Name, ending in "(g)".
+    pub token: String,
     /// Components and constants it is made of.
     pub formation: Formation,
     /// Index of the constant that defined it.
@@ -95,6 +72,8 @@ pub struct Library {
     pub constants: Vec<LibraryConstant>,
     /// Species in solution beyond the bare components.
     pub species: Vec<Species>,
+    /// Gases.
+    pub gases: Vec<Gas>,
     /// Solids.
     pub solids: Vec<Solid>,
 }
@@ -131,9 +110,12 @@ macro_rules! reaction_files {
     };
 }
 
+/// How the token of a gas ends.
+const GAS_ENDING: &str = "(g)";
+
 const COMPONENTS: &str = include_str!("../../assets/constants/components.ron");
 const SOLIDS: &str = include_str!("../../assets/constants/solids.ron");
-const REACTIONS: [(&str, &str); 16] = reaction_files!(
+const REACTIONS: [(&str, &str); 18] = reaction_files!(
     "water_and_acids.ron",
     "hydrolysis.ron",
     "edta.ron",
@@ -150,6 +132,8 @@ const REACTIONS: [(&str, &str); 16] = reaction_files!(
     "phosphates.ron",
     "phosphonates.ron",
     "inorganic_ligands.ron",
+    "silicate.ron",
+    "gases.ron",
 );
 
 static BUILT_IN: LazyLock<Arc<Library>> = LazyLock::new(|| {
@@ -275,7 +259,13 @@ impl Library {
             .map(|(index, constant)| (index, constant.record.reaction.as_str(), &constant.reaction))
             .collect();
         let defined = resolve(&tokens, &entries)?;
-        let species: Vec<Species> = defined
+        let (gases, dissolved): (Vec<_>, Vec<_>) =
+            defined.into_iter().partition(|d| d.token.ends_with(GAS_ENDING));
+        let gases = gases
+            .into_iter()
+            .map(|d| Gas { token: d.token, formation: d.formation, constant: d.constant })
+            .collect();
+        let species: Vec<Species> = dissolved
             .into_iter()
             .map(|d| Species {
                 charge: charge_of(&d.token),
@@ -284,7 +274,7 @@ impl Library {
                 constant: d.constant,
             })
             .collect();
-        let mut library = Library { components, constants, species, solids: Vec::new() };
+        let mut library = Library { components, constants, species, gases, solids: Vec::new() };
         for (record, origin) in solids {
             library.add_solid(record, origin)?;
         }
@@ -347,13 +337,19 @@ impl Library {
         })
     }
 
-    /// How a component or species is made of components.
+    /// A gas by its token.
+    pub fn gas(&self, token: &str) -> Option<&Gas> {
+        self.gases.iter().find(|gas| gas.token == token)
+    }
+
+    /// How a component, species or gas is made of components.
     pub fn formation(&self, token: &str) -> Option<Formation> {
         if let Some(index) = self.component(token) {
             let components = std::collections::BTreeMap::from([(index, 1.0)]);
             return Some(Formation { components, ..Formation::default() });
         }
-        self.species.iter().find(|species| species.token == token).map(|species| species.formation.clone())
+        let species = self.species.iter().find(|species| species.token == token);
+        species.map(|s| &s.formation).or_else(|| self.gas(token).map(|gas| &gas.formation)).cloned()
     }
 
     /// Index of the hydrogen ion, when the library has one.
@@ -419,6 +415,20 @@ mod tests {
                 .map(|(&index, count)| count * charge_of(&library.components[index].token))
                 .sum();
             assert!((charge - species.charge).abs() < 1e-9, "{}", species.token);
+        }
+    }
+
+    #[test]
+    fn gases_resolve_to_components_and_stay_apart_from_dissolved_species() {
+        let library = Library::built_in();
+        assert!(library.species.iter().all(|species| !species.token.ends_with("(g)")));
+        let carbon_dioxide = library.gas("CO2(g)").unwrap();
+        let (carbonate, proton) = (library.component("CO3-2").unwrap(), library.proton().unwrap());
+        assert_eq!(carbon_dioxide.formation.components, [(proton, 2.0), (carbonate, 1.0)].into());
+        assert_eq!(carbon_dioxide.formation.chain.len(), 3);
+        assert_eq!(carbon_dioxide.formation.chain[&carbon_dioxide.constant], -1.0);
+        for token in ["NH3(g)", "SO2(g)", "HCN(g)", "H2S(g)"] {
+            assert!(library.gas(token).is_some(), "{token}");
         }
     }
 

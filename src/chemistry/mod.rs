@@ -7,8 +7,10 @@
 mod constant;
 mod error;
 mod formula;
+mod interaction;
 mod library;
 mod notation;
+mod own_constants;
 mod potential;
 mod product;
 mod reaction;
@@ -18,8 +20,10 @@ mod solid_record;
 pub use constant::{Basis, Component, ComponentKind, Constant, Convention};
 pub use error::ChemistryError;
 pub use formula::Formula;
-pub use library::{Library, Origin, OwnConstants, Solid, Species};
+pub use interaction::{Epsilon, EpsilonOrigin, EpsilonRule, Interaction, Interactions, Ions, ModelNumber};
+pub use library::{Gas, Library, Origin, Solid, Species};
 pub use notation::{pretty, pretty_reaction};
+pub use own_constants::OwnConstants;
 pub use potential::{Couple, Potentials, ReferenceElectrode};
 pub use product::{Assay, Catalogue, Evidence, Form, PriceRange, Product, Role};
 pub use reaction::{Reaction, charge_of};
@@ -31,3 +35,7 @@ pub const PROTON: &str = "H+";
 pub const HYDROXIDE: &str = "OH-";
 /// Token of water, which is the solvent and never a component.
 pub const WATER: &str = "H2O";
+/// Token of the sodium ion.
+pub const SODIUM: &str = "Na+";
+/// Token of the chloride ion.
+pub const CHLORIDE: &str = "Cl-";

@@ -108,7 +108,7 @@ pub fn json_object(bath: &Bath, solution: &Equilibrium, doses: &[f64]) -> Map<St
             "holds": certificate.holds(),
             "balance_residual": finite(certificate.balance_residual),
             "kkt_residual": finite(certificate.kkt_residual),
-            "ionic_strength_residual": finite(certificate.ionic_strength_residual),
+            "activity_residual": finite(certificate.activity_residual),
             "charge_gap_mol_per_L": finite(solution.charge_gap),
             "iterations": certificate.iterations,
         }),

@@ -1,14 +1,21 @@
 //! The part of the library that a set of components can form.
 
-use super::system::{SolidEntry, SpeciesEntry, System, Terms};
+use super::activity::{ActivityModel, Interaction};
+use super::system::{SolidEntry, SpeciesEntry, System, SystemParts, Terms};
 use super::temperature::ConstantModel;
-use crate::chemistry::{Freshness, Library, Origin, PROTON, Reaction, WATER, charge_of};
-use std::collections::BTreeMap;
+use crate::chemistry::{
+    CHLORIDE, Freshness, Interactions, Library, Origin, PROTON, Reaction, SODIUM, WATER, charge_of,
+};
+use std::collections::{BTreeMap, BTreeSet};
 
 /// Collects all species and solids that the given components (indices in the library) can form.
 ///
-/// H⁺ takes part when it is among them.
-pub fn assemble(library: &Library, present: &[usize]) -> System {
+/// H⁺ takes part when it is among them. For ion interaction, ion pairs that its coefficients hold already are left out:
+/// none is counted twice.
+pub fn assemble(library: &Library, present: &[usize], model: ActivityModel) -> System {
+    let interactions = (model == ActivityModel::IonInteraction).then(Interactions::built_in);
+    let contained: BTreeSet<&str> =
+        interactions.iter().flat_map(|interactions| interactions.contained_species()).collect();
     let place: BTreeMap<usize, usize> = present.iter().enumerate().map(|(new, &old)| (old, new)).collect();
     let local = |components: &BTreeMap<usize, f64>| -> Option<Terms> {
         components.iter().map(|(old, &count)| place.get(old).map(|&new| (new, count))).collect()
@@ -23,7 +30,7 @@ pub fn assemble(library: &Library, present: &[usize]) -> System {
             })
             .collect()
     };
-    let mut system = System::default();
+    let mut system = SystemParts::default();
     for (index, &old) in present.iter().enumerate() {
         let token = library.components[old].token.clone();
         let entry = SpeciesEntry {
@@ -35,11 +42,8 @@ pub fn assemble(library: &Library, present: &[usize]) -> System {
         system.species.push(entry);
         system.components.push(token);
     }
-    for species in &library.species {
-        let is_gas = species.token.ends_with("(g)");
-        if let Some(components) =
-            local(&species.formation.components).filter(|terms| !is_gas && !terms.is_empty())
-        {
+    for species in library.species.iter().filter(|species| !contained.contains(species.token.as_str())) {
+        if let Some(components) = local(&species.formation.components).filter(|terms| !terms.is_empty()) {
             let chain = renumber(&species.formation.chain);
             system.species.push(SpeciesEntry {
                 token: species.token.clone(),
@@ -64,8 +68,35 @@ pub fn assemble(library: &Library, present: &[usize]) -> System {
         system.constants.push(ConstantModel::new(&constant.record, &constant.reaction, water));
         system.library_constants.push(old);
     }
-    system.proton = system.component(PROTON);
-    system
+    if let Some(interactions) = interactions {
+        system.interaction = interaction(&interactions, &system.species);
+    }
+    system.proton = system.components.iter().position(|token| token == PROTON);
+    system.into()
+}
+
+/// Gathers the species into classes of ions with the same coefficients towards all others.
+fn interaction(interactions: &Interactions, species: &[SpeciesEntry]) -> Interaction {
+    let mut result = Interaction::default();
+    let mut known: BTreeMap<Vec<u64>, usize> = BTreeMap::new();
+    for one in species {
+        let epsilon = |other: &str| interactions.epsilon(&one.token, other).value;
+        result.salting_out.push(if one.charge == 0.0 { interactions.neutral.value } else { 0.0 });
+        if one.charge == 0.0 {
+            result.class.push(None);
+            continue;
+        }
+        let row: Vec<f64> = species.iter().map(|other| epsilon(&other.token)).collect();
+        let counter = (epsilon(SODIUM), epsilon(CHLORIDE));
+        let bits = row.iter().chain([&counter.0, &counter.1]).map(|value| value.to_bits()).collect();
+        let class = *known.entry(bits).or_insert_with(|| {
+            result.epsilon.push(row);
+            result.counter.push(counter);
+            result.epsilon.len() - 1
+        });
+        result.class.push(Some(class));
+    }
+    result
 }
 
 fn is_water(reaction: &Reaction) -> bool {

@@ -8,8 +8,9 @@ pub struct Certificate {
     /// Largest violation of amount ≥ 0, saturation ≤ 1, product 0 over all solids that may form (ln units for
     /// the saturation, share of the total for the amounts).
     pub kkt_residual: f64,
-    /// |I(c) − I| relative to I: the ionic strength of the result against the one its activity coefficients used.
-    pub ionic_strength_residual: f64,
+    /// |s(c) − s| relative to I: the ionic strength and interaction sums of the result against those that its activity
+    /// coefficients were taken at.
+    pub activity_residual: f64,
     /// Newton steps over all stages.
     pub iterations: usize,
 }
@@ -17,6 +18,6 @@ pub struct Certificate {
 impl Certificate {
     /// Whether all residuals are within the promise: balances 1e−10, conditions of solids 1e−9.
     pub fn holds(&self) -> bool {
-        self.balance_residual <= 1e-10 && self.kkt_residual <= 1e-9 && self.ionic_strength_residual <= 1e-10
+        self.balance_residual <= 1e-10 && self.kkt_residual <= 1e-9 && self.activity_residual <= 1e-10
     }
 }

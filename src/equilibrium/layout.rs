@@ -1,55 +1,115 @@
 //! Which part of a system a problem touches: absent components out, held activities fixed, solids that may form in.
 
 use super::LN_10;
+use super::balances::Balances;
 use super::error::EquilibriumError;
-use super::reduced::Reduced;
-use super::solver::Problem;
+use super::problem::Problem;
+use super::system::System;
 
-/// Which parts of the system take part, and the balances over them.
+/// Which parts of the system take part, and the balances over them. Prepared once for all problems of one shape.
+#[derive(Clone, Debug, Default)]
 pub(super) struct Layout {
+    shape: Shape,
     /// Present components, and the column of each component.
     pub columns: Vec<usize>,
-    pub column_of: Vec<Option<usize>>,
+    column_of: Vec<Option<usize>>,
+    /// Species and solids that take part, by their index in the system.
     pub species: Vec<usize>,
     pub solids: Vec<usize>,
-    pub base: Reduced,
+    /// Charge of each of the species.
+    pub charge: Vec<f64>,
+    /// The balances of the problem at hand.
+    pub base: Balances,
+    /// Row-wise coefficients of each solid over the columns.
     pub solid_rows: Vec<Vec<f64>>,
     pub ln_ks: Vec<f64>,
+    /// Reciprocal size of the balance of each column.
+    pub weights: Vec<f64>,
+}
+
+/// What two problems must share to be laid out alike.
+#[derive(Clone, Debug, Default, PartialEq, Eq)]
+struct Shape {
+    system: Option<u64>,
+    present: Vec<bool>,
+    held: Vec<bool>,
+    may_form: Vec<bool>,
+}
+
+impl Shape {
+    fn is_of(&self, problem: &Problem) -> bool {
+        let components = 0..problem.totals.len();
+        self.system == Some(problem.system.identity())
+            && self.may_form == problem.may_form
+            && self.held.len() == problem.held.len()
+            && self.held.iter().zip(problem.held).all(|(held, value)| *held == value.is_some())
+            && components.clone().all(|i| self.present[i] == is_present(problem, i))
+    }
+
+    fn of(problem: &Problem) -> Self {
+        Self {
+            system: Some(problem.system.identity()),
+            present: (0..problem.totals.len()).map(|i| is_present(problem, i)).collect(),
+            held: problem.held.iter().map(Option::is_some).collect(),
+            may_form: problem.may_form.to_vec(),
+        }
+    }
+}
+
+fn is_present(problem: &Problem, component: usize) -> bool {
+    problem.held[component].is_some()
+        || problem.totals[component] != 0.0
+        || (problem.system.proton == Some(component) && problem.system.reverses_proton())
 }
 
 impl Layout {
-    pub fn new(problem: &Problem) -> Result<Self, EquilibriumError> {
-        let system = problem.system;
-        let reverses = |i: usize| {
-            system
-                .species
-                .iter()
-                .any(|s| s.components.iter().any(|&(component, nu)| component == i && nu < 0.0))
-        };
-        let present: Vec<bool> = (0..system.components.len())
-            .map(|i| {
-                problem.held[i].is_some()
-                    || problem.totals[i] != 0.0
-                    || (system.proton == Some(i) && reverses(i))
-            })
-            .collect();
+    /// Takes over a problem. Returns whether it has the shape of the last one.
+    ///
+    /// # Errors
+    /// [`EquilibriumError::UnboundedSolid`] for a solid that held activities alone supersaturate.
+    pub fn load(&mut self, problem: &Problem) -> Result<bool, EquilibriumError> {
+        let known = self.shape.is_of(problem);
+        if !known {
+            *self = Self::new(problem);
+        }
+        self.base.clear_offset();
+        for (row, &j) in self.species.iter().enumerate() {
+            self.base.set_offset(row, problem.constants.ln_beta[j]);
+        }
+        for (column, &component) in self.columns.iter().enumerate() {
+            match problem.held[component] {
+                Some(ln_a) => self.base.shift_by(column, ln_a),
+                None => self.base.totals[column] = problem.totals[component],
+            }
+        }
+        for (ln_ks, &k) in self.ln_ks.iter_mut().zip(&self.solids) {
+            *ln_ks = problem.constants.ln_ks[k];
+        }
+        self.weigh(problem);
+        self.refuse_unbounded(problem)?;
+        Ok(known)
+    }
+
+    fn new(problem: &Problem) -> Self {
+        let (system, shape) = (problem.system, Shape::of(problem));
+        let present = &shape.present;
         let columns: Vec<usize> = (0..present.len()).filter(|&i| present[i]).collect();
         let mut column_of = vec![None; present.len()];
         for (column, &component) in columns.iter().enumerate() {
             column_of[component] = Some(column);
         }
         let occurs = |terms: &[(usize, f64)]| terms.iter().all(|&(i, _)| present[i]);
-        let species: Vec<usize> =
+        let mut species: Vec<usize> =
             (0..system.species.len()).filter(|&j| occurs(&system.species[j].components)).collect();
+        gather(system, &mut species[columns.len()..]);
         let solids: Vec<usize> = (0..system.solids.len())
             .filter(|&k| problem.may_form[k] && occurs(&system.solids[k].components))
             .collect();
-        let mut base = Reduced::new(columns.len(), species.len(), solids.len());
+        let mut base = Balances::new(columns.len(), species.len(), solids.len());
         let place = |terms: &[(usize, f64)]| -> Vec<(usize, f64)> {
             terms.iter().filter_map(|&(i, nu)| column_of[i].map(|column| (column, nu))).collect()
         };
         for (row, &j) in species.iter().enumerate() {
-            base.offset[row] = problem.constants.ln_beta[j];
             for (column, nu) in place(&system.species[j].components) {
                 base.set(row, column, nu);
             }
@@ -63,74 +123,69 @@ impl Layout {
             }
             solid_rows.push(dense);
         }
-        let totals_row = base.totals_row();
         for (column, &component) in columns.iter().enumerate() {
-            if problem.held[component].is_none() {
-                base.set(totals_row, column, problem.totals[component]);
+            if problem.held[component].is_some() {
+                base.hold(column);
             }
         }
-        for (column, &component) in columns.iter().enumerate() {
-            if let Some(ln_a) = problem.held[component] {
-                base.fix(column, ln_a);
-            }
+        base.survey();
+        Self {
+            charge: species.iter().map(|&j| system.species[j].charge).collect(),
+            ln_ks: vec![0.0; solids.len()],
+            weights: vec![0.0; columns.len()],
+            shape,
+            columns,
+            column_of,
+            species,
+            solids,
+            base,
+            solid_rows,
         }
-        let ln_ks: Vec<f64> = solids.iter().map(|&k| problem.constants.ln_ks[k]).collect();
-        Self::refuse_unbounded(problem, solids_of(&base, &solids, &ln_ks))?;
-        Ok(Self { columns, column_of, species, solids, base, solid_rows, ln_ks })
     }
 
     /// Refuses solids that held activities alone supersaturate.
-    fn refuse_unbounded(
-        problem: &Problem,
-        mut fixed: impl Iterator<Item = (usize, f64)>,
-    ) -> Result<(), EquilibriumError> {
-        match fixed.find(|&(_, excess)| excess > 1e-9) {
-            Some((solid, excess)) => Err(EquilibriumError::UnboundedSolid {
-                solid: problem.system.solids[solid].token.clone(),
-                index: excess / LN_10,
-            }),
-            None => Ok(()),
+    fn refuse_unbounded(&self, problem: &Problem) -> Result<(), EquilibriumError> {
+        for (k, &solid) in self.solids.iter().enumerate() {
+            let row = self.base.solid_row(k);
+            let excess = self.base.offset(row) - self.ln_ks[k];
+            if excess > 1e-9 && self.base.is_fixed(row) {
+                let solid = problem.system.solids[solid].token.clone();
+                return Err(EquilibriumError::UnboundedSolid { solid, index: excess / LN_10 });
+            }
+        }
+        Ok(())
+    }
+
+    /// Weighs each balance by its size; that of H⁺, a difference of large numbers, counts as the largest.
+    fn weigh(&mut self, problem: &Problem) {
+        let sum: f64 = self.columns.iter().map(|&i| problem.totals[i].abs()).sum::<f64>() + 1e-30;
+        for (weight, &i) in self.weights.iter_mut().zip(&self.columns) {
+            let size = if problem.system.proton == Some(i) { sum } else { problem.totals[i].abs() };
+            *weight = 1.0 / size.max(1e-300);
         }
     }
 
-    /// Reciprocal size of each balance; that of H⁺, a difference of large numbers, counts as the largest.
-    pub fn weights(&self, problem: &Problem) -> Vec<f64> {
-        let sum: f64 = self.columns.iter().map(|&i| problem.totals[i].abs()).sum::<f64>() + 1e-30;
-        let size = |i: usize| if problem.system.proton == Some(i) { sum } else { problem.totals[i].abs() };
-        self.columns.iter().map(|&i| 1.0 / size(i).max(1e-300)).collect()
-    }
-
-    pub fn present(&self) -> Vec<bool> {
-        self.column_of.iter().map(Option::is_some).collect()
-    }
-
-    /// ln a over the columns to start from.
-    pub fn start(&self, problem: &Problem, warm: Option<&[f64]>) -> Vec<f64> {
-        self.columns
-            .iter()
-            .map(|&component| match (problem.held[component], warm) {
-                (Some(ln_a), _) => ln_a,
-                (None, Some(ln_a)) => ln_a[component],
-                (None, None) if problem.system.proton == Some(component) => -7.0 * LN_10,
-                (None, None) => problem.totals[component].max(1e-30).ln(),
-            })
-            .collect()
-    }
-
-    /// Values over the columns spread over all components.
-    pub fn spread(&self, x: &[f64], absent: f64) -> Vec<f64> {
-        self.column_of.iter().map(|column| column.map_or(absent, |column| x[column])).collect()
+    /// Writes values over the columns to the components; `absent` to the others.
+    pub fn spread(&self, x: &[f64], absent: f64, to: &mut Vec<f64>) {
+        to.clear();
+        to.extend(self.column_of.iter().map(|column| column.map_or(absent, |column| x[column])));
     }
 }
 
-/// Solids whose ion product is fixed by held activities, with ln(IAP/Ks).
-fn solids_of<'a>(
-    base: &'a Reduced,
-    solids: &'a [usize],
-    ln_ks: &'a [f64],
-) -> impl Iterator<Item = (usize, f64)> + 'a {
-    solids.iter().enumerate().filter_map(move |(k, &solid)| {
-        let row = base.solid_row(k);
-        base.is_fixed(row).then(|| (solid, base.offset[row] - ln_ks[k]))
-    })
+/// Puts species of the same components side by side, by their rarest component first, so that most columns have entries
+/// in few lanes only.
+fn gather(system: &System, species: &mut [usize]) {
+    let mut count = vec![0usize; system.components.len()];
+    for &j in &*species {
+        for &(i, _) in &system.species[j].components {
+            count[i] += 1;
+        }
+    }
+    let key = |j: usize| {
+        let mut parts: Vec<(usize, usize)> =
+            system.species[j].components.iter().map(|&(i, _)| (count[i], i)).collect();
+        parts.sort_unstable();
+        parts
+    };
+    species.sort_by_cached_key(|&j| key(j));
 }

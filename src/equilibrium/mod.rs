@@ -9,29 +9,37 @@
 
 mod activity;
 mod assemble;
+mod balances;
 mod certificate;
+mod cholesky;
 mod convex;
+mod coupling;
 mod error;
+mod lanes;
 mod layout;
 mod potential;
-mod reduced;
+mod problem;
+mod report;
 mod sensitivity;
 mod solids;
 mod solver;
+mod stage;
+mod start;
 mod system;
 mod temperature;
 mod water;
 
-pub use activity::{ActivityModel, DAVIES_LIMIT};
+pub use activity::{ActivityModel, DAVIES_LIMIT, ION_INTERACTION_LIMIT, Interaction};
 pub use assemble::assemble;
 pub use certificate::Certificate;
 pub use error::EquilibriumError;
 pub use potential::nernst;
+pub use problem::{Equilibrium, Problem};
 pub use sensitivity::{Response, Sensitivities, Value};
-pub use solver::{Equilibrium, Problem, Solver};
-pub use system::{Constants, SolidEntry, SpeciesEntry, System, Terms};
+pub use solver::Solver;
+pub use system::{Constants, SolidEntry, SpeciesEntry, System, SystemParts, Terms};
 pub use temperature::{ConstantModel, TemperatureBasis};
-pub use water::{debye_huckel_a, log10_kw};
+pub use water::{debye_huckel_a, debye_huckel_a_molal, density_kg_l, log10_kw, permittivity};
 
 /// Gas constant, J/(mol K) (exact, SI 2019).
 pub const GAS_CONSTANT: f64 = 8.314_462_618;

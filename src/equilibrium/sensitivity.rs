@@ -1,10 +1,11 @@
 //! Exact derivatives of a solution by its totals, its constants and its held activities.
 //!
-//! At the solution the balances, the saturation of the present solids and the definition of ionic strength hold
-//! together; differentiating them gives one linear system for every question.
+//! At the solution the balances, the saturation of the present solids and the sums that activity coefficients depend on
+//! hold together; differentiating them gives one linear system for every question.
 
+use super::activity::{self, Coefficients};
 use super::error::EquilibriumError;
-use super::solver::{Equilibrium, Problem};
+use super::problem::{Equilibrium, Problem};
 use nalgebra::{DMatrix, DVector, Dyn, LU};
 
 /// The factored linear response of a solution.
@@ -13,6 +14,7 @@ pub struct Sensitivities<'a> {
     solution: &'a Equilibrium,
     free: Vec<usize>,
     solids: Vec<usize>,
+    coefficients: Coefficients,
     factor: LU<f64, Dyn, Dyn>,
     /// What each row was multiplied by, and each column.
     rows: DVector<f64>,
@@ -35,8 +37,8 @@ pub struct Response {
     pub ln_a: Vec<f64>,
     /// d n of each solid.
     pub solids: Vec<f64>,
-    /// d I.
-    pub ionic_strength: f64,
+    /// d of the sums that activity coefficients depend on; the first is the ionic strength.
+    pub sums: Vec<f64>,
 }
 
 impl<'a> Sensitivities<'a> {
@@ -52,10 +54,21 @@ impl<'a> Sensitivities<'a> {
         let solids: Vec<usize> = (0..solution.solids.len()).filter(|&k| solution.solids[k] > 0.0).collect();
         let (m, s) = (free.len(), solids.len());
         let place = |component: usize| free.iter().position(|&i| i == component);
-        let mut matrix = DMatrix::<f64>::zeros(m + s + 1, m + s + 1);
-        for (species, &c) in problem.system.species.iter().zip(&solution.c) {
-            let z2 = species.charge * species.charge;
-            let weight = strength_weight(&problem, solution, species.charge);
+        let count = solution.sums.len();
+        let coefficients = solution
+            .sums
+            .first()
+            .map_or_else(Coefficients::default, |&strength| Coefficients::at(problem.constants, strength));
+        let mut matrix = DMatrix::<f64>::zeros(m + s + count, m + s + count);
+        let mut responses: Vec<(usize, f64)> = Vec::with_capacity(2);
+        for (j, (species, &c)) in problem.system.species.iter().zip(&solution.c).enumerate() {
+            if c == 0.0 {
+                continue;
+            }
+            responses.clear();
+            for sum in activity::sums_of(&problem, j) {
+                responses.push((sum, activity::response(&problem, &coefficients, &solution.sums, j, sum)));
+            }
             for &(i, nu) in &species.components {
                 let Some(row) = place(i) else { continue };
                 for &(k, other) in &species.components {
@@ -63,12 +76,28 @@ impl<'a> Sensitivities<'a> {
                         matrix[(row, column)] += nu * other * c;
                     }
                 }
-                matrix[(row, m + s)] += nu * c * z2 * solution.gamma.1;
-                matrix[(m + s, row)] -= weight * nu * c;
+                for &(sum, response) in &responses {
+                    matrix[(row, m + s + sum)] += nu * c * response;
+                }
             }
-            matrix[(m + s, m + s)] -= weight * c * z2 * solution.gamma.1;
+            for sum in 0..count {
+                let weight = whole_weight(&problem, solution, sum, j) * c;
+                if weight == 0.0 {
+                    continue;
+                }
+                for &(i, nu) in &species.components {
+                    if let Some(column) = place(i) {
+                        matrix[(m + s + sum, column)] -= weight * nu;
+                    }
+                }
+                for &(other, response) in &responses {
+                    matrix[(m + s + sum, m + s + other)] -= weight * response;
+                }
+            }
         }
-        matrix[(m + s, m + s)] += 1.0;
+        for sum in 0..count {
+            matrix[(m + s + sum, m + s + sum)] += 1.0;
+        }
         for (k, &solid) in solids.iter().enumerate() {
             for &(i, nu) in &problem.system.solids[solid].components {
                 if let Some(row) = place(i) {
@@ -84,7 +113,7 @@ impl<'a> Sensitivities<'a> {
             let residual = solution.certificate.balance_residual;
             return Err(EquilibriumError::NotConverged { residual, iterations: 0 });
         }
-        Ok(Self { problem, solution, free, solids, factor, rows, columns })
+        Ok(Self { problem, solution, free, solids, coefficients, factor, rows, columns })
     }
 
     /// Response to the total of a component, per mol/L.
@@ -122,7 +151,8 @@ impl<'a> Sensitivities<'a> {
     pub fn by_shift(&self, ln_beta: &[f64], ln_ks: &[f64]) -> Response {
         let (m, s) = (self.free.len(), self.solids.len());
         let mut rhs = self.zero();
-        for ((species, &c), &shift) in self.problem.system.species.iter().zip(&self.solution.c).zip(ln_beta) {
+        let concentrations = self.problem.system.species.iter().zip(&self.solution.c).enumerate();
+        for ((j, (species, &c)), &shift) in concentrations.zip(ln_beta) {
             if shift == 0.0 || c == 0.0 {
                 continue;
             }
@@ -131,7 +161,9 @@ impl<'a> Sensitivities<'a> {
                     rhs[row] -= nu * c * shift;
                 }
             }
-            rhs[m + s] += strength_weight(&self.problem, self.solution, species.charge) * c * shift;
+            for sum in 0..self.solution.sums.len() {
+                rhs[m + s + sum] += whole_weight(&self.problem, self.solution, sum, j) * c * shift;
+            }
         }
         let shifts: Vec<(usize, f64)> =
             self.solids.iter().enumerate().map(|(k, &solid)| (m + k, ln_ks[solid])).collect();
@@ -140,8 +172,14 @@ impl<'a> Sensitivities<'a> {
 
     /// d ln(free concentration) of a component from a response.
     pub fn ln_free(&self, response: &Response, component: usize) -> f64 {
-        let z2 = self.problem.system.species[component].charge.powi(2);
-        response.ln_a[component] + z2 * self.solution.gamma.1 * response.ionic_strength
+        let sums = &self.solution.sums;
+        let minus_ln_gamma: f64 = activity::sums_of(&self.problem, component)
+            .map(|sum| {
+                activity::response(&self.problem, &self.coefficients, sums, component, sum)
+                    * response.sums[sum]
+            })
+            .sum();
+        response.ln_a[component] + minus_ln_gamma
     }
 
     /// Standard uncertainties of log10 of the given values, first order in the constants' uncertainties. A published
@@ -170,7 +208,7 @@ impl<'a> Sensitivities<'a> {
     }
 
     fn zero(&self) -> DVector<f64> {
-        DVector::zeros(self.free.len() + self.solids.len() + 1)
+        DVector::zeros(self.free.len() + self.solids.len() + self.solution.sums.len())
     }
 
     fn respond(&self, mut rhs: DVector<f64>, shifts: &[(usize, f64)]) -> Response {
@@ -184,7 +222,7 @@ impl<'a> Sensitivities<'a> {
         let mut response = Response {
             ln_a: vec![0.0; self.problem.totals.len()],
             solids: vec![0.0; self.solution.solids.len()],
-            ionic_strength: solved[m + s],
+            sums: solved.iter().skip(m + s).copied().collect(),
         };
         for (row, &i) in self.free.iter().enumerate() {
             response.ln_a[i] = solved[row];
@@ -217,8 +255,9 @@ fn equilibrate(matrix: &mut DMatrix<f64>, m: usize, amounts: &[f64]) -> (DVector
     (rows, columns)
 }
 
-/// ∂I/∂c of a species: ½ z², and ½ |z| of the counter-ion it calls for.
-fn strength_weight(problem: &Problem, solution: &Equilibrium, charge: f64) -> f64 {
-    let counter = if problem.counter_ion { solution.charge_gap.signum() * charge } else { 0.0 };
-    0.5 * (charge * charge + counter)
+/// ∂s/∂c of a species, with the part of the counter-ion that it calls for.
+fn whole_weight(problem: &Problem, solution: &Equilibrium, sum: usize, species: usize) -> f64 {
+    let (cations, anions) = activity::counter_weight(problem, sum);
+    let per_gap = if solution.charge_gap > 0.0 { anions } else { -cations };
+    activity::weight(problem, sum, species) + per_gap * problem.system.species[species].charge
 }

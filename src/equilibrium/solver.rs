@@ -1,89 +1,41 @@
-//! Solves a system: absent components out, held activities fixed, solids settled, ionic strength brought to rest.
+//! Solves a system: absent components out, held activities fixed, solids settled, activity coefficients brought to rest.
 
-use super::certificate::Certificate;
 use super::convex::Minimiser;
+use super::coupling::{Coupling, Rest};
 use super::error::EquilibriumError;
 use super::layout::Layout;
-use super::solids::{Fixed, Stage, settle};
-use super::system::{Constants, System};
+use super::problem::{Equilibrium, Problem};
+use super::report;
+use super::solids::{Exchange, Unsettled, exchange, settle};
+use super::stage::{Fixed, Stage};
+use super::start::Start;
 
-/// Longest move of an unknown (ln units) that a prediction along the ionic strength may make.
-const LONGEST_PREDICTION: f64 = 2.0;
-
-/// What is to be solved.
-#[derive(Clone, Copy, Debug)]
-pub struct Problem<'a> {
-    /// Components, species, solids.
-    pub system: &'a System,
-    /// Their constants at the bath's temperature.
-    pub constants: &'a Constants,
-    /// Total of each component, mol/L. That of H⁺ may be negative; ignored for held components.
-    pub totals: &'a [f64],
-    /// ln activity of each held component.
-    pub held: &'a [Option<f64>],
-    /// Whether each solid may precipitate; one that may not is only given its saturation index.
-    pub may_form: &'a [bool],
-    /// Whether a monovalent counter-ion that makes up the charge counts in the ionic strength: the acid or alkali
-    /// that holds the pH.
-    pub counter_ion: bool,
-}
-
-/// A solved system. Logarithms are natural; absent components and species have −∞.
-#[derive(Clone, Debug, Default, PartialEq)]
-pub struct Equilibrium {
-    /// ln activity of each component.
-    pub ln_a: Vec<f64>,
-    /// ln concentration of each species.
-    pub ln_c: Vec<f64>,
-    /// Concentration of each species, mol/L.
-    pub c: Vec<f64>,
-    /// −ln γ/z² at the final ionic strength, and its derivative by ionic strength.
-    pub gamma: (f64, f64),
-    /// Amount of each solid, mol per litre of bath.
-    pub solids: Vec<f64>,
-    /// ln(IAP/Ks) of each solid.
-    pub ln_saturation: Vec<f64>,
-    /// Ionic strength, mol/L, with the counter-ion where asked for.
-    pub ionic_strength: f64,
-    /// Σ z c, mol/L: positive when anions are missing.
-    pub charge_gap: f64,
-    /// Σ ν c + Σ ν n of each component, mol/L; for held components what the bath holds of them.
-    pub totals: Vec<f64>,
-    /// What was left over.
-    pub certificate: Certificate,
-}
-
-impl Equilibrium {
-    /// Free concentration of a component, mol/L.
-    pub fn free(&self, component: usize) -> f64 {
-        self.c[component]
-    }
-
-    /// −log10 of the hydrogen-ion activity.
-    pub fn ph(&self, proton: usize) -> f64 {
-        -self.ln_a[proton] / super::LN_10
-    }
-
-    /// Saturation index log10(IAP/Ks) of a solid.
-    pub fn saturation_index(&self, solid: usize) -> f64 {
-        self.ln_saturation[solid] / super::LN_10
-    }
-}
-
-/// Where the previous point ended, as a start for the next.
-#[derive(Clone, Debug, Default)]
-struct Warm {
-    present: Vec<bool>,
-    ln_a: Vec<f64>,
-    active: Vec<usize>,
-    ionic_strength: f64,
-}
+/// Rounds of solids and activity coefficients.
+const MAX_ROUNDS: usize = 60;
+/// Share of the correction of the first step by degrees, and the smallest step.
+const FIRST_DEGREE: f64 = 0.2;
+const LEAST_DEGREE: f64 = 1e-3;
+/// Residual of the original balances from which refinement is worth a step.
+const REFINED: f64 = 1e-11;
+const MAX_REFINEMENTS: usize = 3;
+/// Distance of the sums from their concentrations, in units of the ionic strength, that counts as rest.
+const AT_REST: f64 = 1e-13;
+/// Distance up to which a round that no longer gains is accepted.
+const NEARLY_AT_REST: f64 = 1e-11;
 
 /// The solver with its buffers and its memory of the last point.
 #[derive(Clone, Debug, Default)]
 pub struct Solver {
+    layout: Layout,
+    coupling: Coupling,
     minimiser: Minimiser,
-    warm: Option<Warm>,
+    stage: Stage,
+    start: Start,
+    amounts: Vec<(usize, f64)>,
+    barred: Vec<usize>,
+    x: Vec<f64>,
+    /// Whether the stage holds the solution of the last problem.
+    warm: bool,
 }
 
 impl Solver {
@@ -94,7 +46,7 @@ impl Solver {
 
     /// Forgets the last point, so that the next solve starts cold.
     pub fn reset(&mut self) {
-        self.warm = None;
+        self.warm = false;
     }
 
     /// Solves a problem, starting from the last one when it had the same components.
@@ -102,229 +54,269 @@ impl Solver {
     /// # Errors
     /// [`EquilibriumError`] for an ill-posed problem; never for a well-posed one.
     pub fn solve(&mut self, problem: &Problem) -> Result<Equilibrium, EquilibriumError> {
+        let mut result = Equilibrium::default();
+        self.solve_into(problem, &mut result)?;
+        Ok(result)
+    }
+
+    /// As [`Solver::solve`] into a result whose buffers are used again: a walk of neighbouring points then allocates
+    /// nothing.
+    ///
+    /// # Errors
+    /// As [`Solver::solve`]; the result is then meaningless.
+    pub fn solve_into(
+        &mut self,
+        problem: &Problem,
+        result: &mut Equilibrium,
+    ) -> Result<(), EquilibriumError> {
         check(problem)?;
-        let layout = Layout::new(problem)?;
-        let warm = self.warm.take().filter(|warm| warm.present == layout.present());
-        let first = self.solve_from(problem, &layout, warm.as_ref());
-        let result = match first {
-            Err(EquilibriumError::NotConverged { .. }) if warm.is_some() => {
-                self.solve_from(problem, &layout, None)
-            }
-            other => other,
-        };
-        result.map_err(|error| match error {
-            EquilibriumError::NotConverged { .. } if lacks_proton_balance(problem) => {
-                EquilibriumError::NoProtonBalance
-            }
-            other => other,
-        })
-    }
-
-    fn solve_from(
-        &mut self,
-        problem: &Problem,
-        layout: &Layout,
-        warm: Option<&Warm>,
-    ) -> Result<Equilibrium, EquilibriumError> {
-        let squares: Vec<f64> =
-            layout.species.iter().map(|&j| problem.system.species[j].charge.powi(2)).collect();
-        let names: Vec<&str> =
-            layout.solids.iter().map(|&k| problem.system.solids[k].token.as_str()).collect();
-        let weights = layout.weights(problem);
-        let all: Vec<usize> = (0..layout.columns.len()).collect();
-        let mut x = layout.start(problem, warm.map(|warm| warm.ln_a.as_slice()));
-        let mut ionic_strength = warm.map_or_else(|| first_guess(problem), |warm| warm.ionic_strength);
-        let corrected = problem.constants.model != super::ActivityModel::AsMeasured;
-        let mut stage: Option<Stage> = None;
-        let (mut low, mut high) = (0.0f64, f64::INFINITY);
+        let mut warm = std::mem::take(&mut self.warm);
+        if !self.layout.load(problem)? || !self.coupling.serves(problem) {
+            self.coupling.prepare(problem, &self.layout);
+            warm = false;
+        }
         let mut iterations = 0;
-        for round in 0..200 {
-            let (per_square, slope) =
-                problem.constants.model.with_slope(problem.constants.slope_a, ionic_strength);
-            let minus_ln_gamma: Vec<f64> = squares.iter().map(|z2| z2 * per_square).collect();
-            let fixed = Fixed {
-                base: &layout.base,
-                solid_rows: &layout.solid_rows,
-                ln_ks: &layout.ln_ks,
-                solid_names: &names,
-                column_weight: &weights,
-                minus_ln_gamma: &minus_ln_gamma,
-            };
-            let stage = match &mut stage {
-                Some(stage) => stage,
-                empty => empty.insert(Self::first_stage(&fixed, layout, warm, &x)),
-            };
-            let (amounts, outcome) = settle(&fixed, stage, &mut self.minimiser, &all, &mut x)?;
-            iterations += outcome.steps;
-            let now = strength(problem, layout, &self.minimiser.c);
-            let excess = now - ionic_strength;
-            let settled =
-                !corrected || excess.abs() <= 2e-14 * now || (high.is_finite() && high - low <= 1e-15 * high);
-            if settled || round == 199 {
-                if !outcome.converged {
-                    return Err(EquilibriumError::NotConverged { residual: outcome.residual, iterations });
+        let mut found = Err(Failure::NotConverged(f64::NAN));
+        if warm {
+            found = self.go_on(problem, &mut iterations);
+        }
+        if matches!(found, Err(Failure::NotConverged(_))) {
+            found = self.begin(problem, &mut iterations);
+        }
+        if matches!(found, Err(Failure::NotConverged(_))) && problem.constants.model.corrects() {
+            found = self.by_degrees(problem, &mut iterations);
+            self.coupling.share = 1.0;
+        }
+        match found {
+            Ok(()) => {
+                self.warm = true;
+                self.report(problem, result);
+                self.refine(problem, result, &mut iterations);
+                result.certificate.iterations = iterations;
+                Ok(())
+            }
+            Err(Failure::Unbounded { solid, excess }) => Err(EquilibriumError::UnboundedSolid {
+                solid: problem.system.solids[self.layout.solids[solid]].token.clone(),
+                index: excess / super::LN_10,
+            }),
+            Err(Failure::NotConverged(_)) if lacks_proton_balance(problem) => {
+                Err(EquilibriumError::NoProtonBalance)
+            }
+            Err(Failure::NotConverged(residual)) => {
+                Err(EquilibriumError::NotConverged { residual, iterations })
+            }
+        }
+    }
+
+    fn report(&self, problem: &Problem, result: &mut Equilibrium) {
+        let Self { layout, coupling, minimiser, x, amounts, .. } = self;
+        report::fill(problem, layout, coupling, minimiser, (x, amounts), result);
+    }
+
+    /// Where rounding shows in the original balances, the unknowns were chosen by sizes that the solution doesn't have:
+    /// they are chosen once more by those it has.
+    fn refine(&mut self, problem: &Problem, result: &mut Equilibrium, iterations: &mut usize) {
+        for _ in 0..MAX_REFINEMENTS {
+            if result.certificate.balance_residual <= REFINED {
+                return;
+            }
+            let Self { layout, coupling, minimiser, stage, x, .. } = self;
+            let fixed = fixed(layout, coupling);
+            let active: Vec<usize> = stage.active.iter().map(|&(solid, _)| solid).collect();
+            stage.weigh(&fixed, &minimiser.c);
+            stage.prepare(&fixed, &active, x);
+            if self.settle_and_rest(problem, iterations).is_err() {
+                self.warm = false;
+                return;
+            }
+            self.report(problem, result);
+        }
+    }
+
+    /// From nothing.
+    fn begin(&mut self, problem: &Problem, iterations: &mut usize) -> Result<(), Failure> {
+        self.coupling.guess(problem);
+        self.coupling.refresh(problem);
+        let Self { layout, coupling, stage, start, x, .. } = self;
+        x.clear();
+        x.extend(layout.columns.iter().map(|&component| {
+            let proton = problem.system.proton == Some(component);
+            let free = if proton { 1e-7 } else { problem.totals[component].max(1e-30) };
+            problem.held[component].unwrap_or_else(|| free.ln())
+        }));
+        let fixed = fixed(layout, coupling);
+        stage.forget();
+        stage.prepare(&fixed, &[], x);
+        stage.start(&fixed, start);
+        self.settle_and_rest(problem, iterations)
+    }
+
+    /// From the solution of the last problem.
+    fn go_on(&mut self, problem: &Problem, iterations: &mut usize) -> Result<(), Failure> {
+        self.coupling.refresh(problem);
+        let Self { layout, coupling, minimiser, stage, x, amounts, barred, .. } = self;
+        stage.reload(&fixed(layout, coupling), &minimiser.exponent);
+        if problem.constants.model.corrects() && rest(problem, coupling, stage, minimiser, iterations) {
+            stage.ln_activities(x);
+            barred.clear();
+            if matches!(exchange(&fixed(layout, coupling), stage, minimiser, amounts, barred), Exchange::None)
+            {
+                return Ok(());
+            }
+        }
+        self.settle_and_rest(problem, iterations)
+    }
+
+    /// From no correction to the full one by degrees, for baths so strong that the way from a guess was lost.
+    fn by_degrees(&mut self, problem: &Problem, iterations: &mut usize) -> Result<(), Failure> {
+        self.coupling.share = 0.0;
+        self.begin(problem, iterations)?;
+        let mut degree = FIRST_DEGREE;
+        while self.coupling.share < 1.0 {
+            let (sums, y, share) = (self.coupling.sums.clone(), self.stage.y.clone(), self.coupling.share);
+            let active = self.stage.active.clone();
+            self.coupling.share = (share + degree).min(1.0);
+            match self.settle_and_rest(problem, iterations) {
+                Ok(()) => degree *= 1.5,
+                Err(Failure::NotConverged(residual)) if degree < LEAST_DEGREE => {
+                    return Err(Failure::NotConverged(residual));
                 }
-                self.warm = Some(Warm {
-                    present: layout.present(),
-                    ln_a: layout.spread(&x, 0.0),
-                    active: stage.active.iter().map(|&(solid, _)| layout.solids[solid]).collect(),
-                    ionic_strength: now,
-                });
-                let used = if corrected { ionic_strength } else { now };
-                return Ok(self.report(problem, layout, &x, &amounts, used, (per_square, slope), iterations));
+                Err(Failure::NotConverged(_)) => {
+                    degree *= 0.25;
+                    self.coupling.share = share;
+                    self.coupling.sums = sums;
+                    if self.stage.active == active && self.stage.y.len() == y.len() {
+                        self.stage.y = y;
+                    }
+                    self.settle_and_rest(problem, iterations)?;
+                }
+                Err(unbounded) => return Err(unbounded),
             }
-            if excess > 0.0 {
-                low = low.max(ionic_strength)
-            } else {
-                high = high.min(ionic_strength)
-            }
-            let next =
-                self.next_strength(problem, layout, stage, slope, (ionic_strength, excess), (low, high));
-            ionic_strength = next;
         }
-        Err(EquilibriumError::NotConverged { residual: f64::NAN, iterations })
+        Ok(())
     }
 
-    fn first_stage(fixed: &Fixed, layout: &Layout, warm: Option<&Warm>, x: &[f64]) -> Stage {
-        if let Some(warm) = warm {
-            let active: Vec<usize> = (0..layout.solids.len())
-                .filter(|&place| warm.active.contains(&layout.solids[place]))
-                .collect();
-            return Stage::prepare(fixed, &active, x);
-        }
-        Stage::prepare(fixed, &[], x)
-    }
-
-    /// Newton step on I(c(I)) − I with the exact slope, kept inside its bracket; moves the unknowns along.
-    fn next_strength(
-        &mut self,
-        problem: &Problem,
-        layout: &Layout,
-        stage: &mut Stage,
-        gamma_slope: f64,
-        (ionic_strength, excess): (f64, f64),
-        (low, high): (f64, f64),
-    ) -> f64 {
-        let sparse = &stage.sparse;
-        self.minimiser.factorise_here(sparse);
-        let mut dy = vec![0.0; sparse.columns];
-        let square = |j: usize| problem.system.species[layout.species[j]].charge.powi(2);
-        for (j, &c) in self.minimiser.c.iter().enumerate() {
-            let (columns, values) = sparse.row(j);
-            for (&column, value) in columns.iter().zip(values) {
-                dy[column as usize] -= value * c * square(j) * gamma_slope;
+    /// Settles the solids at given activity coefficients, brings these to rest with the concentrations, and looks at the
+    /// solids again, until neither changes.
+    fn settle_and_rest(&mut self, problem: &Problem, iterations: &mut usize) -> Result<(), Failure> {
+        let Self { layout, coupling, minimiser, stage, x, amounts, barred, .. } = self;
+        let mut bracket = Bracket::default();
+        let mut best = f64::INFINITY;
+        for _ in 0..MAX_ROUNDS {
+            coupling.refresh(problem);
+            let outcome = settle(&fixed(layout, coupling), stage, minimiser, amounts, x)
+                .map_err(|unsettled| Failure::from_unsettled(unsettled, iterations))?;
+            *iterations += outcome.steps;
+            let distance = coupling.distance(&minimiser.c);
+            if distance <= AT_REST || (distance <= NEARLY_AT_REST && distance >= 0.5 * best) {
+                return if outcome.converged { Ok(()) } else { Err(Failure::NotConverged(outcome.residual)) };
             }
-        }
-        self.minimiser.solve(sparse.columns, &mut dy);
-        let change: Vec<f64> = (0..sparse.rows())
-            .map(|j| self.minimiser.c[j] * (square(j) * gamma_slope + sparse.dot(j, &dy)))
-            .collect();
-        let response = strength_response(problem, layout, &self.minimiser.c, &change);
-        let newton = ionic_strength + excess / (1.0 - response);
-        let inside = newton > low && newton < high && newton.is_finite() && response < 1.0;
-        let next = match (inside, high.is_finite()) {
-            (true, _) => newton,
-            (false, true) => 0.5 * (low + high),
-            (false, false) => 2.0 * ionic_strength + 1e-6,
-        };
-        let move_by = next - ionic_strength;
-        let longest = dy.iter().fold(0.0f64, |max, d| max.max((d * move_by).abs()));
-        let share = if longest > LONGEST_PREDICTION { LONGEST_PREDICTION / longest } else { 1.0 };
-        if share.is_finite() {
-            for (y, d) in stage.y.iter_mut().zip(&dy) {
-                *y += share * d * move_by;
+            best = best.min(distance);
+            let from = coupling.sums[0];
+            bracket.narrow(coupling);
+            if rest(problem, coupling, stage, minimiser, iterations) {
+                stage.ln_activities(x);
+                barred.clear();
+                let fixed = fixed(layout, coupling);
+                match exchange(&fixed, stage, minimiser, amounts, barred) {
+                    Exchange::None => return Ok(()),
+                    Exchange::Unbounded { solid, excess } => {
+                        return Err(Failure::Unbounded { solid, excess });
+                    }
+                    Exchange::Made => {
+                        let active: Vec<usize> = amounts.iter().map(|&(solid, _)| solid).collect();
+                        stage.weigh(&fixed, &minimiser.c);
+                        stage.prepare(&fixed, &active, x);
+                        if !bracket.holds(coupling.sums[0]) {
+                            bracket = Bracket::default();
+                        }
+                        continue;
+                    }
+                }
             }
+            // Newton's method on both failed: move the sums alone, inside what is known of them.
+            coupling.sums[0] = from;
+            coupling.distance(&minimiser.c);
+            bracket.move_inside(coupling);
         }
-        next
-    }
-
-    #[allow(clippy::too_many_arguments)]
-    fn report(
-        &self,
-        problem: &Problem,
-        layout: &Layout,
-        x: &[f64],
-        amounts: &[(usize, f64)],
-        ionic_strength: f64,
-        gamma: (f64, f64),
-        iterations: usize,
-    ) -> Equilibrium {
-        let system = problem.system;
-        let ln_a = layout.spread(x, f64::NEG_INFINITY);
-        let mut ln_c = vec![f64::NEG_INFINITY; system.species.len()];
-        let mut c = vec![0.0; system.species.len()];
-        for (place, &j) in layout.species.iter().enumerate() {
-            c[j] = self.minimiser.c[place];
-            ln_c[j] = c[j].ln();
-            if c[j] < f64::MIN_POSITIVE {
-                let species = &system.species[j];
-                let sum: f64 = species.components.iter().map(|&(i, nu)| nu * ln_a[i]).sum();
-                ln_c[j] = problem.constants.ln_beta[j] + gamma.0 * species.charge.powi(2) + sum;
-            }
-        }
-        let mut solids = vec![0.0; system.solids.len()];
-        for &(place, amount) in amounts {
-            solids[layout.solids[place]] = amount;
-        }
-        let ln_saturation: Vec<f64> = system
-            .solids
-            .iter()
-            .zip(&problem.constants.ln_ks)
-            .map(|(solid, ln_ks)| {
-                let possible = solid.components.iter().all(|&(i, _)| ln_a[i].is_finite());
-                let iap: f64 = solid.components.iter().map(|&(i, nu)| nu * ln_a[i]).sum();
-                if possible { iap - ln_ks } else { f64::NEG_INFINITY }
-            })
-            .collect();
-        let mut result = Equilibrium {
-            charge_gap: system.species.iter().zip(&c).map(|(species, c)| species.charge * c).sum(),
-            ln_a,
-            ln_c,
-            c,
-            gamma,
-            solids,
-            ln_saturation,
-            ionic_strength,
-            totals: vec![0.0; system.components.len()],
-            certificate: Certificate { iterations, ..Certificate::default() },
-        };
-        certify(problem, layout, &mut result);
-        result
+        Err(Failure::NotConverged(best))
     }
 }
 
-/// Fills the totals and the certificate from the original balances.
-fn certify(problem: &Problem, layout: &Layout, result: &mut Equilibrium) {
-    let system = problem.system;
-    let mut magnitude = vec![0.0f64; system.components.len()];
-    let mut add = |components: &[(usize, f64)], amount: f64| {
-        for &(i, nu) in components {
-            result.totals[i] += nu * amount;
-            magnitude[i] += (nu * amount).abs();
-        }
-    };
-    for (species, &c) in system.species.iter().zip(&result.c) {
-        add(&species.components, c);
-    }
-    for (solid, &n) in system.solids.iter().zip(&result.solids) {
-        add(&solid.components, n);
-    }
-    let certificate = &mut result.certificate;
-    for &i in layout.columns.iter().filter(|&&i| problem.held[i].is_none()) {
-        let size = magnitude[i] + problem.totals[i].abs();
-        if size > 0.0 {
-            let gap = (result.totals[i] - problem.totals[i]).abs() / size;
-            certificate.balance_residual = certificate.balance_residual.max(gap);
+/// Why a solve has no result.
+#[derive(Clone, Copy, Debug)]
+enum Failure {
+    Unbounded { solid: usize, excess: f64 },
+    NotConverged(f64),
+}
+
+impl Failure {
+    fn from_unsettled(unsettled: Unsettled, iterations: &mut usize) -> Self {
+        match unsettled {
+            Unsettled::Unbounded { solid, excess } => Self::Unbounded { solid, excess },
+            Unsettled::Endless { steps } => {
+                *iterations += steps;
+                Self::NotConverged(f64::NAN)
+            }
         }
     }
-    for &k in &layout.solids {
-        let excess = result.ln_saturation[k];
-        let off = if result.solids[k] > 0.0 { excess.abs() } else { excess.max(0.0) };
-        certificate.kkt_residual = certificate.kkt_residual.max(off);
+}
+
+fn fixed<'a>(layout: &'a Layout, coupling: &'a Coupling) -> Fixed<'a> {
+    Fixed {
+        base: &layout.base,
+        solid_rows: &layout.solid_rows,
+        ln_ks: &layout.ln_ks,
+        column_weight: &layout.weights,
+        minus_ln_gamma: &coupling.minus_ln_gamma,
     }
-    if problem.constants.model != super::ActivityModel::AsMeasured && result.ionic_strength > 0.0 {
-        let now = strength(problem, layout, &layout.species.iter().map(|&j| result.c[j]).collect::<Vec<_>>());
-        certificate.ionic_strength_residual = (now - result.ionic_strength).abs() / result.ionic_strength;
+}
+
+fn rest(
+    problem: &Problem,
+    coupling: &mut Coupling,
+    stage: &mut Stage,
+    minimiser: &mut Minimiser,
+    iterations: &mut usize,
+) -> bool {
+    let Stage { balances, y, .. } = stage;
+    coupling.rest(problem, balances, minimiser, y, iterations) == Rest::Reached
+}
+
+/// What is known of the ionic strength: I(c(I)) is above I at the low end and below it at the high one.
+#[derive(Clone, Copy, Debug)]
+struct Bracket {
+    low: f64,
+    high: f64,
+}
+
+impl Default for Bracket {
+    fn default() -> Self {
+        Self { low: 0.0, high: f64::INFINITY }
+    }
+}
+
+impl Bracket {
+    fn narrow(&mut self, coupling: &Coupling) {
+        let now = coupling.sums[0];
+        if coupling.found_strength() > now {
+            self.low = self.low.max(now);
+        } else {
+            self.high = self.high.min(now);
+        }
+    }
+
+    fn holds(&self, strength: f64) -> bool {
+        (self.low..=self.high).contains(&strength)
+    }
+
+    fn move_inside(&self, coupling: &mut Coupling) {
+        let now = coupling.sums[0];
+        coupling.adopt(0.5);
+        if !self.holds(coupling.sums[0]) || coupling.sums[0] == now {
+            coupling.sums[0] =
+                if self.high.is_finite() { 0.5 * (self.low + self.high) } else { 2.0 * now + 1e-6 };
+        }
     }
 }
 
@@ -355,43 +347,4 @@ fn lacks_proton_balance(problem: &Problem) -> bool {
                 .iter()
                 .any(|s| s.components.len() == 1 && s.components[0].0 == h && s.components[0].1 < 0.0)
     })
-}
-
-/// A start for the ionic strength: that of the totals as free ions, at most the Davies limit.
-fn first_guess(problem: &Problem) -> f64 {
-    let sum: f64 = problem
-        .system
-        .species
-        .iter()
-        .zip(problem.totals)
-        .map(|(species, total)| 0.5 * species.charge.powi(2) * total.abs())
-        .sum();
-    sum.clamp(1e-7, 0.5)
-}
-
-fn charge(problem: &Problem, layout: &Layout, place: usize) -> f64 {
-    problem.system.species[layout.species[place]].charge
-}
-
-/// ½ Σ z² c, with the monovalent counter-ion that makes up Σ z c where asked for.
-fn strength(problem: &Problem, layout: &Layout, c: &[f64]) -> f64 {
-    let (mut squares, mut gap) = (0.0, 0.0);
-    for (place, &c) in c.iter().enumerate() {
-        let z = charge(problem, layout, place);
-        squares += z * z * c;
-        gap += z * c;
-    }
-    0.5 * (squares + if problem.counter_ion { gap.abs() } else { 0.0 })
-}
-
-/// Change of [`strength`] for a change of the concentrations.
-fn strength_response(problem: &Problem, layout: &Layout, c: &[f64], change: &[f64]) -> f64 {
-    let (mut squares, mut gap, mut gap_change) = (0.0, 0.0, 0.0);
-    for (place, (&c, &dc)) in c.iter().zip(change).enumerate() {
-        let z = charge(problem, layout, place);
-        squares += z * z * dc;
-        gap += z * c;
-        gap_change += z * dc;
-    }
-    0.5 * (squares + if problem.counter_ion { gap.signum() * gap_change } else { 0.0 })
 }

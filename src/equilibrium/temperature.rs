@@ -1,9 +1,11 @@
 //! A published constant moved to the bath's temperature and standard state.
 
 use super::activity::ActivityModel;
-use super::water::log10_kw;
+use super::water::{debye_huckel_a_molal, density_kg_l, log10_kw};
 use super::{GAS_CONSTANT, LN_10};
-use crate::chemistry::{Constant, Convention, PROTON, Reaction, WATER, charge_of};
+use crate::chemistry::{
+    CHLORIDE, Constant, Convention, Interactions, PROTON, Reaction, SODIUM, WATER, charge_of,
+};
 use crate::quantity::kelvin;
 
 /// How well a constant's temperature dependence is known.
@@ -33,6 +35,8 @@ pub struct ConstantModel {
     /// Σ ν z² over solutes, and that of H⁺ alone.
     charge_square_change: f64,
     proton_change: f64,
+    /// Σ ν Σ ε m over the ions of the medium that it was measured in, and that of H⁺ alone.
+    interaction: (f64, f64),
     /// H⁺ set free from water: the reaction is moved in the form that consumes this many OH⁻.
     hydroxide_count: f64,
     is_water: bool,
@@ -61,6 +65,7 @@ impl ConstantModel {
             has_heat_capacity: constant.dcp_j.is_some(),
             charge_square_change,
             proton_change,
+            interaction: medium_interaction(constant, reaction, solids),
             hydroxide_count: if consumes_water && !built_in_water { proton_change.max(0.0) } else { 0.0 },
             is_water: built_in_water,
         }
@@ -88,15 +93,33 @@ impl ConstantModel {
 
     /// From the constant's own convention to the model's: ln K° = ln Kc + Σ ν ln γ at its own I and T.
     fn convention_shift(&self, model: ActivityModel) -> f64 {
+        if model == ActivityModel::IonInteraction {
+            return self.interaction_shift();
+        }
         let davies = ActivityModel::Davies;
         let (per_square, _) = davies.ln_gamma_per_charge_squared(self.ionic_strength, self.temperature_k);
         let squares = match (model, self.convention) {
             (_, Convention::Thermodynamic) | (ActivityModel::AsMeasured, Convention::Mixed) => 0.0,
             (ActivityModel::AsMeasured, Convention::Concentration) => self.proton_change,
-            (ActivityModel::Davies, Convention::Concentration) => self.charge_square_change,
-            (ActivityModel::Davies, Convention::Mixed) => self.charge_square_change - self.proton_change,
+            (_, Convention::Concentration) => self.charge_square_change,
+            (_, Convention::Mixed) => self.charge_square_change - self.proton_change,
         };
         -per_square * squares
+    }
+
+    /// The same by specific ion interaction with the medium of the measurement.
+    fn interaction_shift(&self) -> f64 {
+        let (t, water) = (self.temperature_k, density_kg_l(self.temperature_k));
+        let (squares, interaction) = match self.convention {
+            Convention::Thermodynamic => return 0.0,
+            Convention::Concentration => (self.charge_square_change, self.interaction.0),
+            Convention::Mixed => {
+                (self.charge_square_change - self.proton_change, self.interaction.0 - self.interaction.1)
+            }
+        };
+        let (per_square, _) =
+            ActivityModel::IonInteraction.per_square(debye_huckel_a_molal(t), water, self.ionic_strength);
+        LN_10 * interaction / water - per_square * squares
     }
 
     /// Van 't Hoff with constant heat capacity; reactions that set H⁺ free from water are extrapolated in the
@@ -119,6 +142,31 @@ impl ConstantModel {
         let curvature = heat_capacity / GAS_CONSTANT * ((t / t0).ln() + t0 / t - 1.0);
         van_t_hoff + curvature + n * (log10_kw(t) - log10_kw(t0)) * LN_10
     }
+}
+
+/// Σ ν Σ ε I over the ions of a medium, kg/L, and that of H⁺ alone; uncharged species salt out. A medium that is not
+/// named counts as sodium chloride.
+fn medium_interaction(constant: &Constant, reaction: &Reaction, solid: impl Fn(&str) -> bool) -> (f64, f64) {
+    let interactions = Interactions::built_in();
+    let (cation, anion) = match constant.medium.as_str() {
+        "KNO3" => ("K+", "NO3-"),
+        "KCl" => ("K+", "Cl-"),
+        "NaClO4" => (SODIUM, "ClO4-"),
+        "NaNO3" => (SODIUM, "NO3-"),
+        _ => (SODIUM, CHLORIDE),
+    };
+    let per_molar = |token: &str| match charge_of(token) {
+        charge if charge > 0.0 => interactions.epsilon(token, anion).value,
+        charge if charge < 0.0 => interactions.epsilon(cation, token).value,
+        _ => interactions.neutral.value,
+    };
+    let strength = constant.ionic_strength;
+    let all: f64 = reaction
+        .solutes()
+        .filter(|(token, _)| !solid(token))
+        .map(|(token, nu)| nu * strength * per_molar(token))
+        .sum();
+    (all, reaction.coefficient(PROTON) * strength * per_molar(PROTON))
 }
 
 /// Enthalpy of H2O = H⁺ + OH⁻ at 25 °C, J/mol: Olofsson & Hepler, J. Solution Chem. 4 (1975) 127 (from memory).

@@ -405,7 +405,7 @@ fn file_copy(bath: &Bath, plan: &Plan, solution: &Equilibrium) -> FileCopy {
                 "Largest relative balance residual {:.0e}, conditions of solids {:.0e}, ionic strength {:.0e}; {} Newton steps.",
                 certificate.balance_residual,
                 certificate.kkt_residual,
-                certificate.ionic_strength_residual,
+                certificate.activity_residual,
                 certificate.iterations
             ),
             format!(

@@ -144,6 +144,7 @@ pub(super) fn constants_table(bath: &Bath, solution: &Equilibrium, temperature_c
             fixed(temperature_c, 0),
             match bath.project.activity {
                 ActivityModel::Davies => " and zero ionic strength, before the Davies correction",
+                ActivityModel::IonInteraction => " and zero ionic strength, before ion interaction",
                 ActivityModel::AsMeasured => ", H⁺ as activity",
             }
         ),

@@ -2,7 +2,9 @@
 
 #![allow(dead_code)]
 
-use bathwright::equilibrium::{ActivityModel, Constants, Problem, SolidEntry, SpeciesEntry, System};
+use bathwright::equilibrium::{
+    ActivityModel, Constants, Interaction, Problem, SolidEntry, SpeciesEntry, System, SystemParts,
+};
 
 /// A small deterministic generator (xorshift64*, Vigna 2016), so that a failing seed can be run again anywhere.
 pub struct Dice(u64);
@@ -63,6 +65,31 @@ fn species(token: String, components: Vec<(usize, f64)>, charges: &[f64]) -> Spe
     SpeciesEntry { token, charge, components, chain: Vec::new() }
 }
 
+/// Three classes each of cations and anions with coefficients of −0.3 to 0.3 kg/mol towards each other, the same both
+/// ways as they derive from one excess energy.
+fn random_interaction(dice: &mut Dice, species: &[SpeciesEntry]) -> Interaction {
+    let pairs: Vec<f64> = (0..9).map(|_| dice.between(-0.3, 0.3)).collect();
+    let class: Vec<Option<usize>> = species
+        .iter()
+        .map(|one| match one.charge {
+            charge if charge > 0.0 => Some(dice.whole(0, 2)),
+            charge if charge < 0.0 => Some(3 + dice.whole(0, 2)),
+            _ => None,
+        })
+        .collect();
+    let between = |one: usize, other: Option<usize>| match other {
+        Some(other) if one < 3 && other >= 3 => pairs[3 * one + other - 3],
+        Some(other) if one >= 3 && other < 3 => pairs[3 * other + one - 3],
+        _ => 0.0,
+    };
+    Interaction {
+        epsilon: (0..6).map(|one| class.iter().map(|&other| between(one, other)).collect()).collect(),
+        counter: (0..6).map(|one| if one < 3 { (0.0, 0.1) } else { (0.05, 0.0) }).collect(),
+        salting_out: species.iter().map(|one| if one.charge == 0.0 { 0.1 } else { 0.0 }).collect(),
+        class,
+    }
+}
+
 /// 1–8 metals, 1–6 agents, up to 120 species with log β −25…45, totals 0 or 1e−12…5 mol/L, pH held at −1…15 or
 /// total H of either sign, 0–6 solids with parallel ones among them, Davies on or off.
 pub fn random_system(seed: u64) -> RandomSystem {
@@ -72,20 +99,21 @@ pub fn random_system(seed: u64) -> RandomSystem {
     let mut charges = vec![1.0];
     charges.extend((0..metals).map(|_| dice.whole(1, 3) as f64));
     charges.extend((0..agents).map(|_| -(dice.whole(0, 4) as f64)));
-    let mut system = System {
+    let mut system = SystemParts {
         components: (0..count).map(|i| format!("X{i}")).collect(),
         proton: Some(0),
-        ..System::default()
+        ..SystemParts::default()
     };
     let mut ln_beta = vec![0.0; count];
     for i in 0..count {
         system.species.push(species(format!("X{i}"), vec![(i, 1.0)], &charges));
     }
-    let push = |system: &mut System, ln_beta: &mut Vec<f64>, components: Vec<(usize, f64)>, log_beta: f64| {
-        let token = format!("S{}", system.species.len());
-        system.species.push(species(token, components, &charges));
-        ln_beta.push(log_beta * std::f64::consts::LN_10);
-    };
+    let push =
+        |system: &mut SystemParts, ln_beta: &mut Vec<f64>, components: Vec<(usize, f64)>, log_beta: f64| {
+            let token = format!("S{}", system.species.len());
+            system.species.push(species(token, components, &charges));
+            ln_beta.push(log_beta * std::f64::consts::LN_10);
+        };
     push(&mut system, &mut ln_beta, vec![(0, -1.0)], -14.0);
     let target = dice.whole(count + 1, 120);
     while system.species.len() < target {
@@ -138,8 +166,18 @@ pub fn random_system(seed: u64) -> RandomSystem {
         system.solids.push(SolidEntry { token: format!("P{k}"), components, chain: Vec::new(), aged: false });
         ln_ks.push(dice.between(-25.0, 10.0) * std::f64::consts::LN_10);
     }
-    let model = if dice.chance(0.5) { ActivityModel::Davies } else { ActivityModel::AsMeasured };
-    let constants = Constants { ln_beta, ln_ks, model, slope_a: 0.5105 };
+    let model = match dice.whole(0, 3) {
+        0 => ActivityModel::IonInteraction,
+        1 => ActivityModel::Davies,
+        _ => ActivityModel::AsMeasured,
+    };
+    if model == ActivityModel::IonInteraction {
+        system.interaction = random_interaction(&mut dice, &system.species);
+        // Beyond about 6 mol/kg no interaction coefficient was ever fitted.
+        let strongest = totals.iter().fold(0.0f64, |most, total| most.max(total.abs()));
+        totals.iter_mut().for_each(|total| *total *= (0.5 / strongest).min(1.0));
+    }
+    let constants = Constants { ln_beta, ln_ks, model, slope_a: 0.5105, water_kg_l: 1.0 };
     let may_form = vec![true; system.solids.len()];
-    RandomSystem { system, constants, totals, held, may_form }
+    RandomSystem { system: system.into(), constants, totals, held, may_form }
 }
