@@ -22,6 +22,7 @@ fn solve(model: ActivityModel, contents: &[(&str, f64)], ph: f64) -> (System, Eq
         totals: &totals,
         held: &held,
         may_form: &may_form,
+        open_to: &[],
         counter_ion: false,
     };
     let solved = Solver::new().solve(&problem).expect("a salt solution has an answer");

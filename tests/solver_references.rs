@@ -105,8 +105,14 @@ fn build(reference: &Reference) -> (System, Constants, Vec<f64>, Vec<Option<f64>
     }
     let ln_ks = reference.solids.iter().map(|solid| number_ln(&solid.log10_ks)).collect();
     let model = if reference.davies_a.is_some() { ActivityModel::Davies } else { ActivityModel::AsMeasured };
-    let constants =
-        Constants { ln_beta, ln_ks, model, slope_a: reference.davies_a.unwrap_or(0.51), water_kg_l: 1.0 };
+    let constants = Constants {
+        ln_beta,
+        ln_ks,
+        ln_kg: Vec::new(),
+        model,
+        slope_a: reference.davies_a.unwrap_or(0.51),
+        water_kg_l: 1.0,
+    };
     let totals = reference.components.iter().map(|part| number(&part.total)).collect();
     let mut held = vec![None; reference.components.len()];
     for entry in &reference.held {
@@ -129,6 +135,7 @@ fn compare(reference: &Reference) -> Vec<String> {
         totals: &totals,
         held: &held,
         may_form: &may_form,
+        open_to: &[],
         counter_ion: false,
     };
     let found = match Solver::new().solve(&problem) {

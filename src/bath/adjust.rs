@@ -71,7 +71,8 @@ impl<'a> Balance<'a> {
     fn held(&mut self, totals: &[f64]) -> Result<f64, EquilibriumError> {
         let solution =
             self.bath.solve_totals(&mut self.solver, &self.constants, totals, Some(self.ph), Solids::Real)?;
-        Ok(solution.totals[self.proton])
+        // What the air has brought is nothing that the acid or alkali has to answer for.
+        Ok(solution.totals[self.proton] - solution.taken_up(&self.bath.system, self.proton))
     }
 
     /// H⁺ that the set pH wants beyond what is there: negative when alkali is needed.

@@ -21,6 +21,8 @@ pub enum Flag {
     FromConstants(String),
     /// This component does not follow equilibrium in a tank.
     Slow(String, String),
+    /// This gas has a partial pressure in bar over the bath that people notice.
+    Escapes(String, f64),
     /// The certificate does not hold.
     Uncertified(f64),
 }
@@ -56,6 +58,11 @@ impl std::fmt::Display for Flag {
                 write!(f, "free {metal} is a number from constants: it is below what a shop can measure")
             }
             Flag::Slow(name, reason) => write!(f, "{name}: {reason}"),
+            Flag::Escapes(gas, bar) => write!(
+                f,
+                "{gas} over the bath: {} mbar at equilibrium, above its recommended exposure limit; what escapes is not counted",
+                significant(bar * 1e3, 2)
+            ),
             Flag::Uncertified(residual) => {
                 write!(f, "the balances close only to {residual:.1e}; do not rely on this result")
             }
@@ -98,6 +105,9 @@ pub fn flags(bath: &Bath, solution: &Equilibrium, temperature_c: f64) -> Vec<Fla
         {
             flags.push(Flag::Slow(component.name.clone(), reason.clone()));
         }
+    }
+    for (gas, bar) in bath.notable_gases(solution) {
+        flags.push(Flag::Escapes(gas.trim_end_matches("(g)").to_owned(), bar));
     }
     if !solution.certificate.holds() {
         flags.push(Flag::Uncertified(solution.certificate.balance_residual));

@@ -4,6 +4,7 @@
 //! This floor may read and write files; it knows no dose search, no sheet and no window.
 
 mod adjust;
+mod air;
 mod demo;
 mod error;
 mod file;
@@ -15,6 +16,7 @@ mod recipe;
 mod resolve;
 
 pub use adjust::{Adjuster, Adjustment, Corrected};
+pub use air::Air;
 pub use demo::{DEMOS, Demo};
 pub use error::BathError;
 pub use file::{FileError, load, read, replace_file, save, write};

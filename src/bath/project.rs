@@ -1,5 +1,6 @@
 //! The project as it is saved: what the chemist typed, in the units it was typed in.
 
+use super::air::Air;
 use super::operating::{Ph, Range};
 use crate::chemistry::{OwnConstants, Product};
 use crate::equilibrium::ActivityModel;
@@ -67,6 +68,9 @@ pub struct Tank {
     pub ph: Ph,
     /// Temperature in °C.
     pub temperature_c: Range,
+    /// Exchange with the air.
+    #[serde(default, skip_serializing_if = "Air::is_closed")]
+    pub air: Air,
 }
 
 /// What an input rests on.
@@ -216,6 +220,7 @@ impl Project {
                 volume_l: 1000.0,
                 ph: Ph::Held { low: 8.8, set: 9.0, high: 9.2 },
                 temperature_c: Range::new(20.0, 25.0, 30.0),
+                air: Air::default(),
             },
             contents: Vec::new(),
             agents: Vec::new(),

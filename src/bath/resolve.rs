@@ -1,6 +1,7 @@
 //! The bath: a project resolved to totals in mol/L of a chemical system, ready to be solved at any operating point.
 
 use super::adjust::Adjuster;
+use super::air::{self, Air};
 use super::error::BathError;
 use super::operating::{Ph, Range};
 use super::project::{Project, Rule};
@@ -139,6 +140,16 @@ impl Bath {
         let acid_moles = recipe::known_moles_per_gram("adjust.acid", &acid, &library)?;
         let mut present: Vec<usize> = library.proton().into_iter().collect();
         let adjusters = [&alkali_moles, &acid_moles];
+        let of_the_air = air::exchanged(project.tank.air)
+            .and_then(|gas| library.gas(gas))
+            .map(|gas| gas.formation.components.keys().copied())
+            .into_iter()
+            .flatten();
+        for component in of_the_air {
+            if !present.contains(&component) {
+                present.push(component);
+            }
+        }
         let brought = all
             .iter()
             .chain(agents.iter().map(|(_, moles)| moles))
@@ -248,13 +259,14 @@ impl Bath {
         solids: Solids,
     ) -> Result<Equilibrium, EquilibriumError> {
         let held = self.held(ph);
-        let may_form = self.may_form(solids);
+        let (may_form, open_to) = (self.may_form(solids), self.open_to());
         solver.solve(&Problem {
             system: &self.system,
             constants,
             totals,
             held: &held,
             may_form: &may_form,
+            open_to: &open_to,
             counter_ion: true,
         })
     }
@@ -272,13 +284,14 @@ impl Bath {
         solution: &Equilibrium,
         ask: impl FnOnce(&Sensitivities) -> T,
     ) -> Result<T, EquilibriumError> {
-        let (held, may_form) = (self.held(ph), self.may_form(solids));
+        let (held, may_form, open_to) = (self.held(ph), self.may_form(solids), self.open_to());
         let problem = Problem {
             system: &self.system,
             constants,
             totals,
             held: &held,
             may_form: &may_form,
+            open_to: &open_to,
             counter_ion: true,
         };
         Ok(ask(&Sensitivities::new(problem, solution)?))
@@ -356,6 +369,12 @@ fn check_tank(project: &Project) -> Result<(), BathError> {
             Err(BathError::Order { field: field.to_owned(), low, set, high })
         }
     };
+    if let Air::Open { co2_bar } = project.tank.air
+        && !(co2_bar.is_finite() && (1e-9..=1.0).contains(&co2_bar))
+    {
+        let fix = "give the partial pressure of carbon dioxide in bar, about 4.2e-4 outdoors";
+        return number("tank.air.co2_bar", co2_bar, fix);
+    }
     if let Ph::Held { low, set, high } = project.tank.ph {
         ordered("tank.ph", &Range { low, set, high }, -1.0, 15.0, "give a pH between -1 and 15")?;
     }

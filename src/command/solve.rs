@@ -88,6 +88,13 @@ pub fn json_object(bath: &Bath, solution: &Equilibrium, doses: &[f64]) -> Map<St
         .zip(doses)
         .map(|(agent, dose)| json!({ "product": agent.product.id, "name": agent.product.name, "g_per_L": dose }))
         .collect();
+    let gases: Map<String, Value> = bath
+        .system
+        .gases
+        .iter()
+        .zip(&solution.ln_pressure)
+        .map(|(gas, ln_pressure)| (gas.token.clone(), finite(ln_pressure.exp())))
+        .collect();
     let certificate = solution.certificate;
     let flags: Vec<Value> =
         flags(bath, solution, temperature).iter().map(|flag| json!(flag.to_string())).collect();
@@ -102,6 +109,7 @@ pub fn json_object(bath: &Bath, solution: &Equilibrium, doses: &[f64]) -> Map<St
     object.insert("free_metals".into(), Value::Object(free));
     object.insert("species".into(), Value::Object(species));
     object.insert("solids".into(), Value::Object(solids));
+    object.insert("gases_bar".into(), Value::Object(gases));
     object.insert(
         "certificate".into(),
         json!({

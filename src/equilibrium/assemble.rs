@@ -1,7 +1,7 @@
 //! The part of the library that a set of components can form.
 
 use super::activity::{ActivityModel, Interaction};
-use super::system::{SolidEntry, SpeciesEntry, System, SystemParts, Terms};
+use super::system::{GasEntry, SolidEntry, SpeciesEntry, System, SystemParts, Terms};
 use super::temperature::ConstantModel;
 use crate::chemistry::{
     CHLORIDE, Freshness, Interactions, Library, Origin, PROTON, Reaction, SODIUM, WATER, charge_of,
@@ -58,6 +58,12 @@ pub fn assemble(library: &Library, present: &[usize], model: ActivityModel) -> S
             let chain = renumber(&solid.dissolution.chain);
             let aged = solid.record.state == Freshness::Aged;
             system.solids.push(SolidEntry { token: solid.record.token.clone(), components, chain, aged });
+        }
+    }
+    for gas in &library.gases {
+        if let Some(components) = local(&gas.formation.components) {
+            let chain = renumber(&gas.formation.chain);
+            system.gases.push(GasEntry { token: gas.token.clone(), components, chain });
         }
     }
     let mut ordered: Vec<(usize, usize)> = used.into_iter().map(|(old, new)| (new, old)).collect();

@@ -237,6 +237,12 @@ impl Balances {
         self.live.iter().copied().chain(later)
     }
 
+    /// Forgets how these balances came about: they are the beginning of what follows.
+    pub fn forget_record(&mut self) {
+        self.record.clear();
+        self.pivot_rows.clear();
+    }
+
     /// Takes a column out whose value stands in the constant parts already.
     pub fn hold(&mut self, column: usize) {
         self.live.retain(|&live| live != column);

@@ -29,6 +29,14 @@ pub enum EquilibriumError {
         /// log10 of the saturation ratio.
         index: f64,
     },
+    /// The pressure of an open gas is fixed by held activities already.
+    #[error(
+        "the pressure of {gas} follows from held activities alone, so it can't be given as well; close the bath to it"
+    )]
+    GasFixed {
+        /// Gas token.
+        gas: String,
+    },
     /// Hydrogen can neither be taken up nor given off.
     #[error(
         "the hydrogen balance can't be met: no species binds or releases H+; hold the pH or add the water reaction H2O = H+ + OH-"

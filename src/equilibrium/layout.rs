@@ -20,9 +20,14 @@ pub(super) struct Layout {
     pub charge: Vec<f64>,
     /// The balances of the problem at hand.
     pub base: Balances,
-    /// Row-wise coefficients of each solid over the columns.
-    pub solid_rows: Vec<Vec<f64>>,
+    /// ln Ks of each of the solids.
     pub ln_ks: Vec<f64>,
+    /// Gases that the bath is open to, by their index in the system, with the column that each took out.
+    pub gases: Vec<(usize, usize)>,
+    /// The balances before open gases were taken out; empty without any.
+    closed: Balances,
+    /// ln p − ln K of each open gas, in the places behind the solids.
+    ln_levels: Vec<f64>,
     /// Reciprocal size of the balance of each column.
     pub weights: Vec<f64>,
 }
@@ -34,6 +39,7 @@ struct Shape {
     present: Vec<bool>,
     held: Vec<bool>,
     may_form: Vec<bool>,
+    open: Vec<bool>,
 }
 
 impl Shape {
@@ -41,6 +47,7 @@ impl Shape {
         let components = 0..problem.totals.len();
         self.system == Some(problem.system.identity())
             && self.may_form == problem.may_form
+            && self.open.iter().copied().eq(problem.open_to.iter().map(Option::is_some))
             && self.held.len() == problem.held.len()
             && self.held.iter().zip(problem.held).all(|(held, value)| *held == value.is_some())
             && components.clone().all(|i| self.present[i] == is_present(problem, i))
@@ -52,6 +59,7 @@ impl Shape {
             present: (0..problem.totals.len()).map(|i| is_present(problem, i)).collect(),
             held: problem.held.iter().map(Option::is_some).collect(),
             may_form: problem.may_form.to_vec(),
+            open: problem.open_to.iter().map(Option::is_some).collect(),
         }
     }
 }
@@ -59,7 +67,15 @@ impl Shape {
 fn is_present(problem: &Problem, component: usize) -> bool {
     problem.held[component].is_some()
         || problem.totals[component] != 0.0
+        || open_gases(problem)
+            .any(|gas| problem.system.gases[gas].components.iter().any(|&(i, _)| i == component))
         || (problem.system.proton == Some(component) && problem.system.reverses_proton())
+}
+
+/// The gases that a bath is open to.
+fn open_gases<'a>(problem: &'a Problem) -> impl Iterator<Item = usize> + 'a {
+    let open = problem.open_to.iter().take(problem.system.gases.len()).enumerate();
+    open.filter_map(|(gas, pressure)| pressure.map(|_| gas))
 }
 
 impl Layout {
@@ -70,17 +86,25 @@ impl Layout {
     pub fn load(&mut self, problem: &Problem) -> Result<bool, EquilibriumError> {
         let known = self.shape.is_of(problem);
         if !known {
-            *self = Self::new(problem);
+            *self = Self::new(problem)?;
         }
-        self.base.clear_offset();
+        let balances = if self.gases.is_empty() { &mut self.base } else { &mut self.closed };
+        balances.clear_offset();
         for (row, &j) in self.species.iter().enumerate() {
-            self.base.set_offset(row, problem.constants.ln_beta[j]);
+            balances.set_offset(row, problem.constants.ln_beta[j]);
         }
         for (column, &component) in self.columns.iter().enumerate() {
             match problem.held[component] {
-                Some(ln_a) => self.base.shift_by(column, ln_a),
-                None => self.base.totals[column] = problem.totals[component],
+                Some(ln_a) => balances.shift_by(column, ln_a),
+                None => balances.totals[column] = problem.totals[component],
             }
+        }
+        if !self.gases.is_empty() {
+            for (place, &(gas, _)) in self.gases.iter().enumerate() {
+                let level = problem.open_to[gas].unwrap_or(f64::NAN) - problem.constants.ln_kg[gas];
+                self.ln_levels[self.solids.len() + place] = level;
+            }
+            self.base.reload(&self.closed, &self.ln_levels);
         }
         for (ln_ks, &k) in self.ln_ks.iter_mut().zip(&self.solids) {
             *ln_ks = problem.constants.ln_ks[k];
@@ -90,7 +114,7 @@ impl Layout {
         Ok(known)
     }
 
-    fn new(problem: &Problem) -> Self {
+    fn new(problem: &Problem) -> Result<Self, EquilibriumError> {
         let (system, shape) = (problem.system, Shape::of(problem));
         let present = &shape.present;
         let columns: Vec<usize> = (0..present.len()).filter(|&i| present[i]).collect();
@@ -105,7 +129,8 @@ impl Layout {
         let solids: Vec<usize> = (0..system.solids.len())
             .filter(|&k| problem.may_form[k] && occurs(&system.solids[k].components))
             .collect();
-        let mut base = Balances::new(columns.len(), species.len(), solids.len());
+        let open: Vec<usize> = open_gases(problem).collect();
+        let mut base = Balances::new(columns.len(), species.len(), solids.len() + open.len());
         let place = |terms: &[(usize, f64)]| -> Vec<(usize, f64)> {
             terms.iter().filter_map(|&(i, nu)| column_of[i].map(|column| (column, nu))).collect()
         };
@@ -114,24 +139,38 @@ impl Layout {
                 base.set(row, column, nu);
             }
         }
-        let mut solid_rows = Vec::with_capacity(solids.len());
-        for (k, &solid) in solids.iter().enumerate() {
-            let mut dense = vec![0.0; columns.len()];
-            for (column, nu) in place(&system.solids[solid].components) {
+        let solid_terms = solids.iter().map(|&solid| &system.solids[solid].components);
+        let gas_terms = open.iter().map(|&gas| &system.gases[gas].components);
+        for (k, terms) in solid_terms.chain(gas_terms).enumerate() {
+            for (column, nu) in place(terms) {
                 base.set(base.solid_row(k), column, nu);
-                dense[column] = nu;
             }
-            solid_rows.push(dense);
         }
         for (column, &component) in columns.iter().enumerate() {
             if problem.held[component].is_some() {
                 base.hold(column);
             }
         }
+        let closed = if open.is_empty() { Balances::default() } else { base.clone() };
+        let mut gases = Vec::with_capacity(open.len());
+        for (place, &gas) in open.iter().enumerate() {
+            let row = base.solid_row(solids.len() + place);
+            // Its own component goes out, not hydrogen, which many share.
+            let weight = |column: usize| if system.proton == Some(columns[column]) { 1e-6 } else { 1.0 };
+            let Some(column) = base.largest(row, weight) else {
+                return Err(EquilibriumError::GasFixed { gas: system.gases[gas].token.clone() });
+            };
+            base.pivot(column, row);
+            base.saturate(column, solids.len() + place, 0.0);
+            gases.push((gas, column));
+        }
         base.survey();
-        Self {
+        Ok(Self {
             charge: species.iter().map(|&j| system.species[j].charge).collect(),
             ln_ks: vec![0.0; solids.len()],
+            ln_levels: vec![0.0; solids.len() + open.len()],
+            gases,
+            closed,
             weights: vec![0.0; columns.len()],
             shape,
             columns,
@@ -139,8 +178,7 @@ impl Layout {
             species,
             solids,
             base,
-            solid_rows,
-        }
+        })
     }
 
     /// Refuses solids that held activities alone supersaturate.

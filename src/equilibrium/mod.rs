@@ -37,7 +37,7 @@ pub use potential::nernst;
 pub use problem::{Equilibrium, Problem};
 pub use sensitivity::{Response, Sensitivities, Value};
 pub use solver::Solver;
-pub use system::{Constants, SolidEntry, SpeciesEntry, System, SystemParts, Terms};
+pub use system::{Constants, GasEntry, SolidEntry, SpeciesEntry, System, SystemParts, Terms};
 pub use temperature::{ConstantModel, TemperatureBasis};
 pub use water::{debye_huckel_a, debye_huckel_a_molal, density_kg_l, log10_kw, permittivity};
 

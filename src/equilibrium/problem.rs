@@ -17,6 +17,9 @@ pub struct Problem<'a> {
     pub held: &'a [Option<f64>],
     /// Whether each solid may precipitate; one that may not is only given its saturation index.
     pub may_form: &'a [bool],
+    /// ln of the partial pressure in bar of each gas that the bath is open to; a gas beyond the end of the slice, or
+    /// without a pressure, can neither come nor go.
+    pub open_to: &'a [Option<f64>],
     /// Whether a monovalent counter-ion that makes up the charge counts in the ionic strength: the acid or alkali
     /// that holds the pH.
     pub counter_ion: bool,
@@ -39,6 +42,10 @@ pub struct Equilibrium {
     pub solids: Vec<f64>,
     /// ln(IAP/Ks) of each solid.
     pub ln_saturation: Vec<f64>,
+    /// ln of the partial pressure of each gas over the solution, bar.
+    pub ln_pressure: Vec<f64>,
+    /// Amount of each open gas taken up, mol per litre of bath; negative when it has left.
+    pub uptake: Vec<f64>,
     /// Ionic strength, mol/L, with the counter-ion where asked for.
     pub ionic_strength: f64,
     /// Σ z c, mol/L: positive when anions are missing.
@@ -55,6 +62,14 @@ impl Equilibrium {
     /// Free concentration of a component, mol/L.
     pub fn free(&self, component: usize) -> f64 {
         self.c[component]
+    }
+
+    /// What open gases have brought of a component, mol/L.
+    pub fn taken_up(&self, system: &System, component: usize) -> f64 {
+        let parts = system.gases.iter().zip(&self.uptake).flat_map(|(gas, uptake)| {
+            gas.components.iter().filter(|(i, _)| *i == component).map(move |(_, nu)| nu * uptake)
+        });
+        parts.sum()
     }
 
     /// −log10 of the hydrogen-ion activity.

@@ -38,6 +38,13 @@ pub(super) fn fill(
         let product: f64 = solid.components.iter().map(|&(i, nu)| nu * result.ln_a[i]).sum();
         result.ln_saturation.push(if possible { product - ln_ks } else { f64::NEG_INFINITY });
     }
+    result.ln_pressure.clear();
+    for (gas, ln_kg) in system.gases.iter().zip(&problem.constants.ln_kg) {
+        let possible = gas.components.iter().all(|&(i, _)| result.ln_a[i].is_finite());
+        let product: f64 = gas.components.iter().map(|&(i, nu)| nu * result.ln_a[i]).sum();
+        result.ln_pressure.push(if possible { product + ln_kg } else { f64::NEG_INFINITY });
+    }
+    renew(&mut result.uptake, system.gases.len(), 0.0);
     result.charge_gap =
         layout.charge.iter().enumerate().map(|(place, charge)| charge * at(&minimiser.c, place)).sum();
     certify(problem, layout, result);
@@ -69,10 +76,18 @@ fn certify(problem: &Problem, layout: &Layout, result: &mut Equilibrium) {
             add(&solid.components, n);
         }
     }
+    for &(gas, column) in &layout.gases {
+        // What the balance of the component that it took out lacks has come from the air.
+        let component = layout.columns[column];
+        let terms = &system.gases[gas].components;
+        let own = terms.iter().find(|&&(i, _)| i == component).map_or(1.0, |&(_, nu)| nu);
+        result.uptake[gas] = (result.totals[component] - problem.totals[component]) / own;
+    }
     for &i in layout.columns.iter().filter(|&&i| problem.held[i].is_none()) {
-        let size = magnitude[i] + problem.totals[i].abs();
+        let size = result.magnitudes[i] + problem.totals[i].abs();
         if size > 0.0 {
-            worst = worst.max((result.totals[i] - problem.totals[i]).abs() / size);
+            worst =
+                worst.max((result.totals[i] - problem.totals[i] - result.taken_up(system, i)).abs() / size);
         }
     }
     let mut unmet: f64 = 0.0;

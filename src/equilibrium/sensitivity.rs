@@ -14,6 +14,8 @@ pub struct Sensitivities<'a> {
     solution: &'a Equilibrium,
     free: Vec<usize>,
     solids: Vec<usize>,
+    /// Gases that the bath is open to.
+    gases: Vec<usize>,
     coefficients: Coefficients,
     factor: LU<f64, Dyn, Dyn>,
     /// What each row was multiplied by, and each column.
@@ -52,7 +54,9 @@ impl<'a> Sensitivities<'a> {
             .filter(|&i| problem.held[i].is_none() && solution.ln_a[i].is_finite())
             .collect();
         let solids: Vec<usize> = (0..solution.solids.len()).filter(|&k| solution.solids[k] > 0.0).collect();
-        let (m, s) = (free.len(), solids.len());
+        let open = problem.open_to.iter().take(solution.uptake.len()).enumerate();
+        let gases: Vec<usize> = open.filter_map(|(gas, pressure)| pressure.map(|_| gas)).collect();
+        let (m, s) = (free.len(), solids.len() + gases.len());
         let place = |component: usize| free.iter().position(|&i| i == component);
         let count = solution.sums.len();
         let coefficients = solution
@@ -98,22 +102,25 @@ impl<'a> Sensitivities<'a> {
         for sum in 0..count {
             matrix[(m + s + sum, m + s + sum)] += 1.0;
         }
-        for (k, &solid) in solids.iter().enumerate() {
-            for &(i, nu) in &problem.system.solids[solid].components {
+        let solid_terms = solids.iter().map(|&solid| &problem.system.solids[solid].components);
+        let gas_terms = gases.iter().map(|&gas| &problem.system.gases[gas].components);
+        for (k, terms) in solid_terms.chain(gas_terms).enumerate() {
+            for &(i, nu) in terms {
                 if let Some(row) = place(i) {
                     matrix[(row, m + k)] += nu;
                     matrix[(m + k, row)] += nu;
                 }
             }
         }
-        let amounts: Vec<f64> = solids.iter().map(|&solid| solution.solids[solid]).collect();
+        let uptakes = gases.iter().map(|&gas| solution.uptake[gas].abs().max(1e-12));
+        let amounts: Vec<f64> = solids.iter().map(|&solid| solution.solids[solid]).chain(uptakes).collect();
         let (rows, columns) = equilibrate(&mut matrix, m, &amounts);
         let factor = matrix.lu();
         if !factor.is_invertible() {
             let residual = solution.certificate.balance_residual;
             return Err(EquilibriumError::NotConverged { residual, iterations: 0 });
         }
-        Ok(Self { problem, solution, free, solids, coefficients, factor, rows, columns })
+        Ok(Self { problem, solution, free, solids, gases, coefficients, factor, rows, columns })
     }
 
     /// Response to the total of a component, per mol/L.
@@ -132,7 +139,8 @@ impl<'a> Sensitivities<'a> {
         };
         let species: Vec<f64> = self.problem.system.species.iter().map(|s| shift(&s.components)).collect();
         let solids: Vec<f64> = self.problem.system.solids.iter().map(|s| -shift(&s.components)).collect();
-        let mut response = self.by_shift(&species, &solids);
+        let gases: Vec<f64> = self.problem.system.gases.iter().map(|g| shift(&g.components)).collect();
+        let mut response = self.shifted(&species, &solids, &gases);
         response.ln_a[component] = 1.0;
         response
     }
@@ -144,12 +152,18 @@ impl<'a> Sensitivities<'a> {
         };
         let species: Vec<f64> = self.problem.system.species.iter().map(|s| count(&s.chain)).collect();
         let solids: Vec<f64> = self.problem.system.solids.iter().map(|s| count(&s.chain)).collect();
-        self.by_shift(&species, &solids)
+        let gases: Vec<f64> = self.problem.system.gases.iter().map(|g| count(&g.chain)).collect();
+        self.shifted(&species, &solids, &gases)
     }
 
     /// Response to a shift of ln β of every species and of ln Ks of every solid.
     pub fn by_shift(&self, ln_beta: &[f64], ln_ks: &[f64]) -> Response {
-        let (m, s) = (self.free.len(), self.solids.len());
+        self.shifted(ln_beta, ln_ks, &vec![0.0; self.problem.system.gases.len()])
+    }
+
+    /// The same with a shift of ln K of every gas.
+    fn shifted(&self, ln_beta: &[f64], ln_ks: &[f64], ln_kg: &[f64]) -> Response {
+        let (m, s) = (self.free.len(), self.solids.len() + self.gases.len());
         let mut rhs = self.zero();
         let concentrations = self.problem.system.species.iter().zip(&self.solution.c).enumerate();
         for ((j, (species, &c)), &shift) in concentrations.zip(ln_beta) {
@@ -165,8 +179,14 @@ impl<'a> Sensitivities<'a> {
                 rhs[m + s + sum] += whole_weight(&self.problem, self.solution, sum, j) * c * shift;
             }
         }
-        let shifts: Vec<(usize, f64)> =
-            self.solids.iter().enumerate().map(|(k, &solid)| (m + k, ln_ks[solid])).collect();
+        let shifts: Vec<(usize, f64)> = self
+            .solids
+            .iter()
+            .map(|&solid| ln_ks[solid])
+            .chain(self.gases.iter().map(|&gas| -ln_kg[gas]))
+            .enumerate()
+            .map(|(k, shift)| (m + k, shift))
+            .collect();
         self.respond(rhs, &shifts)
     }
 
@@ -208,7 +228,7 @@ impl<'a> Sensitivities<'a> {
     }
 
     fn zero(&self) -> DVector<f64> {
-        DVector::zeros(self.free.len() + self.solids.len() + self.solution.sums.len())
+        DVector::zeros(self.free.len() + self.solids.len() + self.gases.len() + self.solution.sums.len())
     }
 
     fn respond(&self, mut rhs: DVector<f64>, shifts: &[(usize, f64)]) -> Response {
@@ -218,7 +238,7 @@ impl<'a> Sensitivities<'a> {
         rhs.component_mul_assign(&self.rows);
         let mut solved = self.factor.solve(&rhs).unwrap_or_else(|| self.zero());
         solved.component_mul_assign(&self.columns);
-        let (m, s) = (self.free.len(), self.solids.len());
+        let (m, s) = (self.free.len(), self.solids.len() + self.gases.len());
         let mut response = Response {
             ln_a: vec![0.0; self.problem.totals.len()],
             solids: vec![0.0; self.solution.solids.len()],

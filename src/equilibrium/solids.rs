@@ -90,7 +90,7 @@ pub(super) fn exchange(
 /// of other solids: 1e−14 mol/L of one is no rounding error because there are 5 mol/L of another.
 fn largest_amount(fixed: &Fixed, solid: usize) -> f64 {
     let weighted =
-        fixed.solid_rows[solid].iter().zip(fixed.column_weight).map(|(nu, weight)| nu.abs() * weight);
+        fixed.base.live.iter().map(|&i| fixed.solid_entry(solid, i).abs() * fixed.column_weight[i]);
     1.0 / weighted.fold(1e-300, f64::max)
 }
 

@@ -265,7 +265,6 @@ impl Failure {
 fn fixed<'a>(layout: &'a Layout, coupling: &'a Coupling) -> Fixed<'a> {
     Fixed {
         base: &layout.base,
-        solid_rows: &layout.solid_rows,
         ln_ks: &layout.ln_ks,
         column_weight: &layout.weights,
         minus_ln_gamma: &coupling.minus_ln_gamma,

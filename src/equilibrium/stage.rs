@@ -16,14 +16,19 @@ const MAX_TURNS: usize = 25;
 pub(super) struct Fixed<'a> {
     /// Balances with held activities taken out.
     pub base: &'a Balances,
-    /// Row-wise original coefficients of each solid over the columns of `base`.
-    pub solid_rows: &'a [Vec<f64>],
     /// ln Ks of each solid.
     pub ln_ks: &'a [f64],
     /// Reciprocal size of the balance of each column.
     pub column_weight: &'a [f64],
     /// −ln γ of each species.
     pub minus_ln_gamma: &'a [Lane],
+}
+
+impl Fixed<'_> {
+    /// Coefficient of a solid in a column of the base.
+    pub fn solid_entry(&self, solid: usize, column: usize) -> f64 {
+        self.base.get(self.base.solid_row(solid), column)
+    }
 }
 
 /// The current set of present solids with the unknowns that remain.
@@ -61,6 +66,7 @@ impl Stage {
     /// Takes the given solids out of the base; `x` is a guess of ln a over all columns.
     pub fn prepare(&mut self, fixed: &Fixed, solids: &[usize], x: &[f64]) {
         self.origin.copy_from(fixed.base);
+        self.origin.forget_record();
         self.active.clear();
         if self.weight.len() != fixed.column_weight.len() {
             self.weight.clear();
@@ -249,7 +255,7 @@ impl Stage {
         // Each balance in units of its own size, so that no pivot mixes a scarce component with a plentiful one.
         let weight = |r: usize| self.weight[self.active[r].1];
         let matrix = DMatrix::from_fn(size, size, |r, s| {
-            weight(r) * fixed.solid_rows[self.active[s].0][self.active[r].1]
+            weight(r) * fixed.solid_entry(self.active[s].0, self.active[r].1)
         });
         let missing = DVector::from_fn(size, |r, _| {
             let column = self.active[r].1;
@@ -264,8 +270,8 @@ impl Stage {
     pub fn combination(&self, fixed: &Fixed, solid: usize) -> Vec<f64> {
         let size = self.active.len();
         let matrix =
-            DMatrix::from_fn(size, size, |r, s| fixed.solid_rows[self.active[s].0][self.active[r].1]);
-        let target = DVector::from_fn(size, |r, _| fixed.solid_rows[solid][self.active[r].1]);
+            DMatrix::from_fn(size, size, |r, s| fixed.solid_entry(self.active[s].0, self.active[r].1));
+        let target = DVector::from_fn(size, |r, _| fixed.solid_entry(solid, self.active[r].1));
         matrix.lu().solve(&target).map_or_else(|| vec![0.0; size], |alpha| alpha.iter().copied().collect())
     }
 

@@ -36,6 +36,17 @@ pub struct SolidEntry {
     pub aged: bool,
 }
 
+/// A gas over the solution.
+#[derive(Clone, Debug, PartialEq)]
+pub struct GasEntry {
+    /// Name, ending in "(g)".
+    pub token: String,
+    /// Exponents of its partial pressure over components.
+    pub components: Terms,
+    /// Constants in its overall constant: ln p = Σ chain ln K + Σ ν ln a, p in bar.
+    pub chain: Terms,
+}
+
 /// What a [`System`] is made of.
 #[derive(Clone, Debug, Default, PartialEq)]
 pub struct SystemParts {
@@ -45,6 +56,8 @@ pub struct SystemParts {
     pub species: Vec<SpeciesEntry>,
     /// Solids.
     pub solids: Vec<SolidEntry>,
+    /// Gases.
+    pub gases: Vec<GasEntry>,
     /// The constants that the chains refer to.
     pub constants: Vec<ConstantModel>,
     /// The same constants in the library that the system was assembled from, for their sources.
@@ -101,6 +114,8 @@ pub struct Constants {
     pub ln_beta: Vec<f64>,
     /// Overall ln Ks of each solid.
     pub ln_ks: Vec<f64>,
+    /// Overall ln K of each gas: ln p = ln K + Σ ν ln a, p in bar.
+    pub ln_kg: Vec<f64>,
     /// Activity model.
     pub model: ActivityModel,
     /// Debye–Hückel slope A at this temperature: per mol/L for Davies, per mol/kg for ion interaction.
@@ -120,6 +135,7 @@ impl SystemParts {
         Constants {
             ln_beta: self.species.iter().map(|species| sum(&species.chain, &ln_k)).collect(),
             ln_ks: self.solids.iter().map(|solid| sum(&solid.chain, &ln_k)).collect(),
+            ln_kg: self.gases.iter().map(|gas| sum(&gas.chain, &ln_k)).collect(),
             model,
             slope_a: match model {
                 ActivityModel::IonInteraction => debye_huckel_a_molal(temperature_k),

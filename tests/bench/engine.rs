@@ -51,6 +51,7 @@ fn uncertainty(criterion: &mut Criterion) {
         totals: &totals,
         held: &held,
         may_form: &may_form,
+        open_to: &[],
         counter_ion: true,
     };
     let solution = solver.solve(&problem).expect("demo baths solve");

@@ -39,6 +39,7 @@ impl Case {
             totals: &self.totals,
             held: &self.held,
             may_form: &self.may_form,
+            open_to: &[],
             counter_ion: false,
         }
     }
@@ -92,6 +93,7 @@ pub fn random_case(components: usize, species: usize, seed: u64) -> Case {
     let constants = Constants {
         ln_beta,
         ln_ks: Vec::new(),
+        ln_kg: Vec::new(),
         model: ActivityModel::AsMeasured,
         slope_a: 0.5105,
         water_kg_l: 1.0,

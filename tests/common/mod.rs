@@ -55,6 +55,7 @@ impl RandomSystem {
             totals: &self.totals,
             held: &self.held,
             may_form: &self.may_form,
+            open_to: &[],
             counter_ion: false,
         }
     }
@@ -177,7 +178,7 @@ pub fn random_system(seed: u64) -> RandomSystem {
         let strongest = totals.iter().fold(0.0f64, |most, total| most.max(total.abs()));
         totals.iter_mut().for_each(|total| *total *= (0.5 / strongest).min(1.0));
     }
-    let constants = Constants { ln_beta, ln_ks, model, slope_a: 0.5105, water_kg_l: 1.0 };
+    let constants = Constants { ln_beta, ln_ks, ln_kg: Vec::new(), model, slope_a: 0.5105, water_kg_l: 1.0 };
     let may_form = vec![true; system.solids.len()];
     RandomSystem { system: system.into(), constants, totals, held, may_form }
 }
