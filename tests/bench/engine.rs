@@ -4,6 +4,7 @@ mod systems;
 
 use bathwright::bath::{Bath, Demo};
 use bathwright::equilibrium::{Equilibrium, Problem, Sensitivities, Solver, Value};
+use bathwright::study::{Axis, Basis, diagram};
 use criterion::{BatchSize, Criterion, criterion_group, criterion_main};
 use std::hint::black_box;
 use systems::random_case;
@@ -36,7 +37,8 @@ fn cold_and_warm(criterion: &mut Criterion) {
 }
 
 fn uncertainty(criterion: &mut Criterion) {
-    let project = Demo::named("electroless_nickel").expect("a demo bath").project().expect("demo baths read");
+    let project =
+        Demo::named("electroless_nickel.ron").expect("a demo bath").project().expect("demo baths read");
     let bath = Bath::resolve(&project).expect("demo baths resolve");
     let constants = bath.constants_at(bath.project.tank.temperature_c.set);
     let mut solver = Solver::new();
@@ -68,5 +70,15 @@ fn uncertainty(criterion: &mut Criterion) {
     });
 }
 
-criterion_group!(benches, cold_and_warm, uncertainty);
+fn four_hundred_points(criterion: &mut Criterion) {
+    let project =
+        Demo::named("hard_water_cleaner.ron").expect("a demo bath").project().expect("demo baths read");
+    let bath = Bath::resolve(&project).expect("demo baths resolve");
+    let basis = Basis(bath.limits[0].component);
+    criterion.bench_function("diagram of 400 points of a demo bath", |bencher| {
+        bencher.iter(|| black_box(diagram(&bath, Axis::Ph { from: 6.0, to: 13.0 }, basis, 400)));
+    });
+}
+
+criterion_group!(benches, cold_and_warm, uncertainty, four_hundred_points);
 criterion_main!(benches);
