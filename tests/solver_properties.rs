@@ -2,7 +2,7 @@
 
 mod common;
 
-use bathwright::equilibrium::{EquilibriumError, LN_10, Solver};
+use bathwright::equilibrium::{ActivityModel, EquilibriumError, LN_10, Solver};
 use common::{Dice, random_system};
 use proptest::prelude::*;
 
@@ -99,4 +99,50 @@ fn a_warm_start_ends_where_a_cold_one_does() {
         failures.len(),
         &failures[..failures.len().min(12)]
     );
+}
+
+/// One solver for many systems and baths: what a refused or a different problem has left behind must not matter.
+///
+/// With ion interaction the certificate alone is asked for: strong attraction of highly charged ions can give one bath two
+/// solutions, a dilute and a strong one, and a walk stays on its own (5 of 20,000 such jumps).
+#[test]
+fn a_solver_that_has_seen_other_systems_answers_as_a_fresh_one() {
+    let mut travelled = Solver::new();
+    let (mut compared, mut refused) = (0, 0);
+    for seed in 0..1500 {
+        let mut random = random_system(seed);
+        let _ = travelled.solve(&random.problem());
+        // All that its first solid is made of is held: first beyond saturation, which is refused, then below it.
+        if let Some(solid) = random.system.solids.first() {
+            let square: f64 = solid.components.iter().map(|(_, nu)| nu * nu).sum();
+            let components = solid.components.clone();
+            let ln_ks = random.constants.ln_ks[0];
+            for (level, beyond) in [(ln_ks + 1.0, true), (ln_ks - 1.0, false)] {
+                for &(i, nu) in &components {
+                    random.held[i] = Some(level * nu / square);
+                }
+                if beyond {
+                    refused += usize::from(travelled.solve(&random.problem()).is_err());
+                }
+            }
+        } else if let Some(ln_a) = &mut random.held[0] {
+            *ln_a = -7.0 * LN_10;
+        }
+        match (Solver::new().solve(&random.problem()), travelled.solve(&random.problem())) {
+            (Ok(fresh), Ok(found)) => {
+                compared += 1;
+                assert!(found.certificate.holds(), "seed {seed}: {:?}", found.certificate);
+                if random.constants.model == ActivityModel::IonInteraction {
+                    continue;
+                }
+                for (i, (a, b)) in fresh.ln_a.iter().zip(&found.ln_a).enumerate() {
+                    let same = a == b || ((a - b) / LN_10).abs() <= 1e-9;
+                    assert!(same, "seed {seed}, component {i}: fresh {a}, travelled {b}");
+                }
+            }
+            (Err(fresh), Err(found)) => assert_eq!(fresh, found),
+            (fresh, found) => panic!("seed {seed}: {:?} {:?}", fresh.err(), found.err()),
+        }
+    }
+    assert!(compared > 1000 && refused > 300, "{compared} {refused}");
 }

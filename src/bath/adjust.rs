@@ -71,7 +71,7 @@ impl<'a> Balance<'a> {
     fn held(&mut self, totals: &[f64]) -> Result<f64, EquilibriumError> {
         let solution =
             self.bath.solve_totals(&mut self.solver, &self.constants, totals, Some(self.ph), Solids::Real)?;
-        // What the air has brought is nothing that the acid or alkali has to answer for.
+        // What the air brings is there without a product, as the recipe's own hydrogen is: carbonic acid calls for alkali.
         Ok(solution.totals[self.proton] - solution.taken_up(&self.bath.system, self.proton))
     }
 
@@ -190,7 +190,7 @@ impl Bath {
 
 #[cfg(test)]
 mod tests {
-    use crate::bath::{Adjust, Bath, Demo};
+    use crate::bath::{Adjust, Air, Bath, Demo};
 
     fn copper_strike(alkali: &str) -> Bath {
         let mut project = Demo::named("copper_strike.ron").unwrap().project().unwrap();
@@ -211,6 +211,18 @@ mod tests {
             let alone = bath.ph_after(&doses[..bath.agents.len()], None).unwrap().unwrap();
             assert!(alone < ph - 0.1, "{alkali}: {alone}");
         }
+    }
+
+    #[test]
+    fn a_bath_in_air_is_brought_back_to_its_set_ph_too() {
+        let mut project = Demo::named("copper_strike.ron").unwrap().project().unwrap();
+        project.tank.air = Air::Open { co2_bar: 4.2e-4 };
+        let bath = Bath::resolve(&project).unwrap();
+        let mut doses = bath.doses();
+        doses[0] = 10.0;
+        let adjustment = bath.corrected(&doses).unwrap().adjustment.expect("an acid agent calls for alkali");
+        let ph = bath.ph_after(&doses, Some(&adjustment)).unwrap().unwrap();
+        assert!((ph - bath.ph_set().unwrap()).abs() < 1e-6, "{ph}");
     }
 
     #[test]

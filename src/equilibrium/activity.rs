@@ -3,6 +3,10 @@
 //! Davies needs one sum, the ionic strength. Specific ion interaction needs beside it, for every class of ions with the
 //! same coefficients, the sum of coefficient times concentration over all ions. Both are then
 //! −ln γⱼ = zⱼ² P(I) + nⱼ I − f(I) s_class(j), which is all that the solver and the derivatives have to know.
+//!
+//! For given coefficients an equilibrium has one answer; coefficients that depend on the answer can give more than one.
+//! With invented interaction coefficients and very high charges that was seen now and then, and the result is then the
+//! one on the side of the start.
 
 use super::LN_10;
 use super::problem::Problem;

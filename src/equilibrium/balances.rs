@@ -28,7 +28,7 @@ pub(super) struct Balances {
     pub live: Vec<usize>,
     /// Which groups of lanes of each column have entries among the species, a bit each.
     occupied: Vec<u64>,
-    /// Largest Σ |ν| of a species.
+    /// Bound of Σ |ν| of any species over the live columns.
     order: f64,
     /// What was done to the totals and the constant parts, so that it can be done to others.
     record: Vec<Event>,

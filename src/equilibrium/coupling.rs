@@ -4,7 +4,7 @@
 //! Newton's method on both sets of equations, S(c) = T and s = W c; the sums are eliminated first (Schur complement), so
 //! that the Cholesky factor of the balances alone is needed.
 
-use super::activity::{self, Coefficients};
+use super::activity::{self, ActivityModel, Coefficients};
 use super::balances::Balances;
 use super::convex::Minimiser;
 use super::lanes::{Lane, WIDTH, ZERO_LANE, dot, multiply, put};
@@ -27,6 +27,8 @@ const MAX_STEPS: usize = 14;
 /// The sums with their weights over the species of a layout.
 #[derive(Clone, Debug, Default)]
 pub(super) struct Coupling {
+    /// Model, and whether a counter-ion counts, that the rows were filled for.
+    filled_for: Option<(ActivityModel, bool)>,
     /// Values of the sums that the activity coefficients are taken at.
     pub sums: Vec<f64>,
     /// −ln γ of each species.
@@ -91,12 +93,12 @@ impl Coupling {
         self.minus_ln_gamma = vec![ZERO_LANE; lanes];
         self.coefficients = Coefficients::default();
         self.share = 1.0;
+        self.filled_for = Some((problem.constants.model, problem.counter_ion));
     }
 
-    /// Whether a layout was prepared for the model of a problem.
+    /// Whether the rows were filled for the model of a problem.
     pub fn serves(&self, problem: &Problem) -> bool {
-        self.sums.len() == activity::sum_count(problem)
-            && self.counter.first().is_none_or(|first| *first == activity::counter_weight(problem, 0))
+        self.filled_for == Some((problem.constants.model, problem.counter_ion))
     }
 
     /// A first guess of the sums: the totals as free ions, at most as strong as the Davies equation bears.

@@ -110,7 +110,11 @@ impl Layout {
             *ln_ks = problem.constants.ln_ks[k];
         }
         self.weigh(problem);
-        self.refuse_unbounded(problem)?;
+        if let Err(unbounded) = self.refuse_unbounded(problem) {
+            // Nothing else was prepared for this layout yet: the next problem begins anew.
+            self.shape = Shape::default();
+            return Err(unbounded);
+        }
         Ok(known)
     }
 
