@@ -54,16 +54,6 @@ fn each_floor_uses_only_floors_below_it() {
 }
 
 #[test]
-fn dosing_and_study_do_not_know_each_other() {
-    for path in sources() {
-        let text = std::fs::read_to_string(&path).unwrap();
-        let inside = |floor: &str| path.components().any(|part| part.as_os_str() == floor);
-        assert!(!(inside("study") && code(&text).contains("crate::dosing")), "{}", path.display());
-        assert!(!(inside("dosing") && code(&text).contains("crate::study")), "{}", path.display());
-    }
-}
-
-#[test]
 fn every_source_file_begins_with_what_it_is_for() {
     for path in sources() {
         let text = std::fs::read_to_string(&path).unwrap();
