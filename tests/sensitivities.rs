@@ -177,3 +177,65 @@ fn a_warm_start_finds_the_same_answer_as_a_cold_one() {
         }
     }
 }
+
+/// The transposed solve and one solve per input are two ways to the same numbers.
+#[test]
+fn gradients_agree_with_the_response_to_each_input() {
+    let mut compared = 0;
+    for seed in 1..400 {
+        let random = random_system(seed);
+        let Some(here) = solve(&random) else { continue };
+        let Ok(answers) = Sensitivities::new(random.problem(), &here) else { continue };
+        if condition(&random, &here, &answers) > MOST_SENSITIVE {
+            continue;
+        }
+        let system = &random.system;
+        let close = |what: &str, one: f64, other: f64| {
+            let scale = 1.0 + one.abs().max(other.abs());
+            assert!((one - other).abs() <= 1e-7 * scale, "seed {seed}, {what}: {one} against {other}");
+        };
+        let Some(metal) = (1..random.totals.len()).find(|&i| here.ln_a[i].is_finite()) else { continue };
+        let free = answers.gradient(Value::Free(metal));
+        for i in 0..random.totals.len() {
+            let size = random.totals[i].abs().max(1e-12);
+            let response = answers.by_total(i);
+            close("total", free.by_total[i] * size, answers.ln_free(&response, metal) * size);
+        }
+        if random.held[0].is_some() {
+            close("pH", free.by_held(system, 0), answers.ln_free(&answers.by_held(0), metal));
+        }
+        let by_constants = free.by_constants(system);
+        for (index, slope) in by_constants.iter().enumerate() {
+            close("constant", *slope, answers.ln_free(&answers.by_constant(index), metal));
+        }
+        let dissolved = answers.gradient(Value::Dissolved(metal));
+        for (index, slope) in dissolved.by_constants(system).iter().enumerate() {
+            let response = answers.by_constant(index);
+            let of_solids: f64 = system
+                .solids
+                .iter()
+                .zip(&response.solids)
+                .flat_map(|(solid, n)| solid.components.iter().map(move |(i, nu)| (*i, nu * n)))
+                .filter(|(i, _)| *i == metal)
+                .map(|(_, change)| change)
+                .sum();
+            let total: f64 = (0..here.c.len()).map(|j| system.coefficient(j, metal) * here.c[j]).sum();
+            // What the solids give up goes into solution, as the total stays.
+            close("dissolved", *slope, -of_solids / total);
+        }
+        for solid in 0..system.solids.len() {
+            let product = |slopes: &[f64]| -> f64 {
+                system.solids[solid].components.iter().map(|&(i, nu)| nu * slopes[i]).sum()
+            };
+            if !here.ln_saturation[solid].is_finite() {
+                continue;
+            }
+            let saturation = answers.gradient(Value::Saturation(solid));
+            let by_total = product(&answers.by_total(metal).ln_a);
+            let size = random.totals[metal];
+            close("saturation", saturation.by_total[metal] * size, by_total * size);
+        }
+        compared += 1;
+    }
+    assert!(compared > 100, "{compared}");
+}

@@ -256,10 +256,7 @@ impl<'a> Assessor<'a> {
         Ok(Reading {
             ph: self.bath.system.proton.map_or(f64::NAN, |proton| solution.ph(proton)),
             temperature_c: self.temperatures[place.0].0,
-            value: match value {
-                Value::Free(component) => solution.free(component),
-                Value::Saturation(solid) => solution.ln_saturation[solid].exp(),
-            },
+            value: value.ln(&self.bath.system, &solution).exp(),
             sigma,
         })
     }

@@ -64,6 +64,11 @@ impl Equilibrium {
         self.c[component]
     }
 
+    /// Concentration of a component in all its dissolved species, mol/L.
+    pub fn dissolved(&self, system: &System, component: usize) -> f64 {
+        (0..self.c.len()).map(|species| system.coefficient(species, component) * self.c[species]).sum()
+    }
+
     /// What open gases have brought of a component, mol/L.
     pub fn taken_up(&self, system: &System, component: usize) -> f64 {
         let parts = system.gases.iter().zip(&self.uptake).flat_map(|(gas, uptake)| {

@@ -10,26 +10,19 @@ use nalgebra::{DMatrix, DVector, Dyn, LU};
 
 /// The factored linear response of a solution.
 pub struct Sensitivities<'a> {
-    problem: Problem<'a>,
-    solution: &'a Equilibrium,
-    free: Vec<usize>,
-    solids: Vec<usize>,
+    pub(super) problem: Problem<'a>,
+    pub(super) solution: &'a Equilibrium,
+    pub(super) free: Vec<usize>,
+    /// Row of each component that is free.
+    pub(super) places: Vec<Option<usize>>,
+    pub(super) solids: Vec<usize>,
     /// Gases that the bath is open to.
-    gases: Vec<usize>,
-    coefficients: Coefficients,
-    factor: LU<f64, Dyn, Dyn>,
+    pub(super) gases: Vec<usize>,
+    pub(super) coefficients: Coefficients,
+    pub(super) factor: LU<f64, Dyn, Dyn>,
     /// What each row was multiplied by, and each column.
-    rows: DVector<f64>,
-    columns: DVector<f64>,
-}
-
-/// A value whose uncertainty is asked for.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub enum Value {
-    /// Free concentration of a component.
-    Free(usize),
-    /// Saturation ratio of a solid.
-    Saturation(usize),
+    pub(super) rows: DVector<f64>,
+    pub(super) columns: DVector<f64>,
 }
 
 /// Response of a solution to one input.
@@ -57,7 +50,9 @@ impl<'a> Sensitivities<'a> {
         let open = problem.open_to.iter().take(solution.uptake.len()).enumerate();
         let gases: Vec<usize> = open.filter_map(|(gas, pressure)| pressure.map(|_| gas)).collect();
         let (m, s) = (free.len(), solids.len() + gases.len());
-        let place = |component: usize| free.iter().position(|&i| i == component);
+        let mut places = vec![None; problem.totals.len()];
+        free.iter().enumerate().for_each(|(row, &component)| places[component] = Some(row));
+        let place = |component: usize| places[component];
         let count = solution.sums.len();
         let coefficients = solution
             .sums
@@ -120,13 +115,13 @@ impl<'a> Sensitivities<'a> {
             let residual = solution.certificate.balance_residual;
             return Err(EquilibriumError::NotConverged { residual, iterations: 0 });
         }
-        Ok(Self { problem, solution, free, solids, gases, coefficients, factor, rows, columns })
+        Ok(Self { problem, solution, free, places, solids, gases, coefficients, factor, rows, columns })
     }
 
     /// Response to the total of a component, per mol/L.
     pub fn by_total(&self, component: usize) -> Response {
         let mut rhs = self.zero();
-        if let Some(row) = self.free.iter().position(|&i| i == component) {
+        if let Some(row) = self.places[component] {
             rhs[row] = 1.0;
         }
         self.respond(rhs, &[])
@@ -171,7 +166,7 @@ impl<'a> Sensitivities<'a> {
                 continue;
             }
             for &(i, nu) in &species.components {
-                if let Some(row) = self.free.iter().position(|&free| free == i) {
+                if let Some(row) = self.places[i] {
                     rhs[row] -= nu * c * shift;
                 }
             }
@@ -202,32 +197,7 @@ impl<'a> Sensitivities<'a> {
         response.ln_a[component] + minus_ln_gamma
     }
 
-    /// Standard uncertainties of log10 of the given values, first order in the constants' uncertainties. A published
-    /// constant counts once, in all species whose chain it stands in.
-    pub fn sigma_log10(&self, values: &[Value]) -> Vec<f64> {
-        let mut variances = vec![0.0; values.len()];
-        for (index, constant) in self.problem.system.constants.iter().enumerate() {
-            let response = self.by_constant(index);
-            for (variance, value) in variances.iter_mut().zip(values) {
-                let slope = match *value {
-                    Value::Free(component) => self.ln_free(&response, component),
-                    Value::Saturation(solid) => self.ln_saturation(&response, solid, index),
-                };
-                *variance += (slope * constant.sigma_ln / super::LN_10).powi(2);
-            }
-        }
-        variances.into_iter().map(f64::sqrt).collect()
-    }
-
-    /// d ln(IAP/Ks) of a solid from the response to ln K of a constant.
-    fn ln_saturation(&self, response: &Response, solid: usize, constant: usize) -> f64 {
-        let entry = &self.problem.system.solids[solid];
-        let product: f64 = entry.components.iter().map(|&(i, nu)| nu * response.ln_a[i]).sum();
-        let own = entry.chain.iter().find(|(index, _)| *index == constant).map_or(0.0, |(_, n)| *n);
-        product - own
-    }
-
-    fn zero(&self) -> DVector<f64> {
+    pub(super) fn zero(&self) -> DVector<f64> {
         DVector::zeros(self.free.len() + self.solids.len() + self.gases.len() + self.solution.sums.len())
     }
 
@@ -276,7 +246,7 @@ fn equilibrate(matrix: &mut DMatrix<f64>, m: usize, amounts: &[f64]) -> (DVector
 }
 
 /// ∂s/∂c of a species, with the part of the counter-ion that it calls for.
-fn whole_weight(problem: &Problem, solution: &Equilibrium, sum: usize, species: usize) -> f64 {
+pub(super) fn whole_weight(problem: &Problem, solution: &Equilibrium, sum: usize, species: usize) -> f64 {
     let (cations, anions) = activity::counter_weight(problem, sum);
     let per_gap = if solution.charge_gap > 0.0 { anions } else { -cations };
     activity::weight(problem, sum, species) + per_gap * problem.system.species[species].charge
