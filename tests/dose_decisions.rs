@@ -60,7 +60,7 @@ fn the_smallest_dose_holds_and_a_little_less_does_not() {
         let bath = Bath::resolve(&demo.project().unwrap()).unwrap();
         let result = search(&bath, 0).unwrap();
         let found = result.found.unwrap_or_else(|| panic!("{}: no dose", demo.file));
-        let mut assessor = Assessor::new(&bath);
+        let mut assessor = Assessor::new(&bath).unwrap();
         let mut doses = bath.doses();
         doses[0] = found.dose_g_l;
         let excess = |a: &bathwright::dosing::Assessment| {
@@ -77,7 +77,7 @@ fn the_worst_case_is_never_better_than_any_point_of_the_range() {
     for demo in DEMOS {
         let bath = Bath::resolve(&demo.project().unwrap()).unwrap();
         let doses: Vec<f64> = bath.agents.iter().map(|agent| 0.3 * agent.max_g_l).collect();
-        let assessment = Assessor::new(&bath).assess(&doses).unwrap();
+        let assessment = Assessor::new(&bath).unwrap().assess(&doses).unwrap();
         assert!(assessment.walls.iter().any(|wall| matches!(wall.wall, Wall::Ceiling(_) | Wall::Solid(_))));
         let brute = brute_force(&bath, &doses);
         assert!(

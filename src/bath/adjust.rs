@@ -5,9 +5,10 @@
 //! ions along (potassium that pairs, phosphate that precipitates, ammonia that binds), so its amount is the root of
 //! that balance and not a quotient.
 
-use super::resolve::{Bath, Solids};
+use super::resolve::Bath;
+use super::solving::{Points, Solids};
 use crate::chemistry::Product;
-use crate::equilibrium::{Constants, EquilibriumError, Solver};
+use crate::equilibrium::{Constants, Equilibrium, EquilibriumError};
 
 /// A product that brings the pH back, with what one gram of it releases.
 #[derive(Clone, Debug, PartialEq)]
@@ -16,6 +17,8 @@ pub struct Adjuster {
     pub product: Product,
     /// Moles of each system component per gram of product.
     pub per_gram: Vec<f64>,
+    /// Litres that one gram of product adds to the bath.
+    pub litres_per_gram: f64,
 }
 
 /// The pH correction of a dose.
@@ -32,10 +35,26 @@ pub struct Adjustment {
 pub struct Corrected {
     /// Totals with doses and correction, mol/L.
     pub totals: Vec<f64>,
+    /// Volume after the additions over that before.
+    pub dilution: f64,
     /// The correction; `None` when the pH is not held or none is needed.
     pub adjustment: Option<Adjustment>,
     /// Why the pH can't be brought back, when the product at hand can't do it.
     pub failure: Option<String>,
+}
+
+/// Totals after additions, and the volume that they made of one litre.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub(super) struct Mixed {
+    pub totals: Vec<f64>,
+    pub dilution: f64,
+}
+
+/// Which end of a bracket moved last.
+#[derive(Clone, Copy, PartialEq)]
+enum End {
+    Low,
+    High,
 }
 
 /// A dose that moves the pH by less than this needs no correction: no meter in a shop shows it.
@@ -44,128 +63,169 @@ const NEGLIGIBLE_PH: f64 = 0.02;
 const MOST_G_L: f64 = 1000.0;
 /// Steps of the root search, and its relative width at the end.
 const ROOT_STEPS: usize = 60;
-const ROOT_WIDTH: f64 = 1e-10;
+const ROOT_WIDTH: f64 = 1e-11;
 
-/// The hydrogen balance at the set point.
-struct Balance<'a> {
+/// The hydrogen balance of a bath at its set point, kept for many doses.
+#[derive(Clone, Debug)]
+pub struct Corrector<'a> {
     bath: &'a Bath,
+    /// What the balance needs; `None` when the pH is not held.
+    balance: Option<Balance<'a>>,
+}
+
+#[derive(Clone, Debug)]
+struct Balance<'a> {
     constants: Constants,
-    solver: Solver,
+    points: Points<'a>,
+    solution: Equilibrium,
     ph: f64,
     proton: usize,
     /// Moles of H⁺ per litre that the bath as it stands holds beyond what its recipe lists.
     unlisted: f64,
 }
 
-impl<'a> Balance<'a> {
-    /// `None` when the pH is not held.
-    fn new(bath: &'a Bath) -> Result<Option<Self>, EquilibriumError> {
-        let (Some(ph), Some(proton)) = (bath.ph_set(), bath.system.proton) else { return Ok(None) };
-        let constants = bath.constants_at(bath.project.tank.temperature_c.set);
-        let mut balance = Self { bath, constants, solver: Solver::new(), ph, proton, unlisted: 0.0 };
-        balance.unlisted = balance.held(&bath.contents)? - bath.contents[proton];
-        Ok(Some(balance))
-    }
-
-    /// Moles of H⁺ per litre that given totals hold at the set pH.
-    fn held(&mut self, totals: &[f64]) -> Result<f64, EquilibriumError> {
-        let solution =
-            self.bath.solve_totals(&mut self.solver, &self.constants, totals, Some(self.ph), Solids::Real)?;
-        // What the air brings is there without a product, as the recipe's own hydrogen is: carbonic acid calls for alkali.
-        Ok(solution.totals[self.proton] - solution.taken_up(&self.bath.system, self.proton))
-    }
-
-    /// H⁺ that the set pH wants beyond what is there: negative when alkali is needed.
-    fn wanted(&mut self, totals: &[f64]) -> Result<f64, EquilibriumError> {
-        Ok(self.held(totals)? - totals[self.proton] - self.unlisted)
-    }
-
-    /// The pH that given totals have when nothing holds it.
-    fn ph_of(&mut self, totals: &[f64]) -> Result<f64, EquilibriumError> {
-        let mut totals = totals.to_vec();
-        totals[self.proton] += self.unlisted;
-        let solution =
-            self.bath.solve_totals(&mut self.solver, &self.constants, &totals, None, Solids::Real)?;
-        Ok(solution.ph(self.proton))
-    }
-
-    /// Grams per litre of a product that bring the balance to zero, if any amount does.
-    fn root(&mut self, start: &[f64], adjuster: &Adjuster) -> Result<Option<f64>, EquilibriumError> {
-        let mut at = |grams: f64| {
-            let totals = with(start, adjuster, grams);
-            self.wanted(&totals)
+impl<'a> Corrector<'a> {
+    /// Solves the bath as it stands.
+    ///
+    /// # Errors
+    /// [`EquilibriumError`] for an ill-posed bath.
+    pub fn new(bath: &'a Bath) -> Result<Self, EquilibriumError> {
+        let (Some(ph), Some(proton)) = (bath.ph_set(), bath.system.proton) else {
+            return Ok(Self { bath, balance: None });
         };
-        let (mut low, mut f_low) = (0.0, at(0.0)?);
-        let (mut high, mut f_high) = (1e-3, at(1e-3)?);
-        while f_low.signum() == f_high.signum() {
-            if high > MOST_G_L {
-                return Ok(None);
-            }
-            (low, f_low) = (high, f_high);
-            high *= 4.0;
-            f_high = at(high)?;
-        }
-        // Regula falsi with the weight of a stuck end halved (Illinois rule).
-        let (mut w_low, mut w_high) = (f_low, f_high);
-        for _ in 0..ROOT_STEPS {
-            let middle = (low * w_high - high * w_low) / (w_high - w_low);
-            let f = at(middle)?;
-            if f == 0.0 || high - low <= ROOT_WIDTH * high {
-                return Ok(Some(middle));
-            }
-            if f.signum() == f_low.signum() {
-                (low, f_low, w_low) = (middle, f, f);
-                w_high *= 0.5;
-            } else {
-                (high, f_high, w_high) = (middle, f, f);
-                w_low *= 0.5;
-            }
-            if f.signum() != w_low.signum() && f.signum() != w_high.signum() {
-                (w_low, w_high) = (f_low, f_high);
-            }
-        }
-        Ok(Some(0.5 * (low + high)))
+        let mut balance = Balance {
+            constants: bath.constants_at(bath.project.tank.temperature_c.set),
+            points: Points::new(bath, Solids::Real),
+            solution: Equilibrium::default(),
+            ph,
+            proton,
+            unlisted: 0.0,
+        };
+        balance.unlisted = balance.held(&bath.contents, ph)? - bath.contents[proton];
+        Ok(Self { bath, balance: Some(balance) })
     }
-}
 
-/// Totals with some grams per litre of a product.
-fn with(totals: &[f64], adjuster: &Adjuster, grams: f64) -> Vec<f64> {
-    totals.iter().zip(&adjuster.per_gram).map(|(total, per_gram)| total + grams * per_gram).collect()
-}
-
-impl Bath {
     /// The bath with doses in g/L and with the acid or alkali that brings it back to its set pH.
     ///
     /// # Errors
     /// [`EquilibriumError`] for an ill-posed bath.
-    pub fn corrected(&self, doses: &[f64]) -> Result<Corrected, EquilibriumError> {
-        let totals = self.totals(doses);
-        let as_it_is = |totals| Corrected { totals, adjustment: None, failure: None };
-        if doses.iter().all(|dose| *dose == 0.0) {
-            return Ok(as_it_is(totals));
+    pub fn corrected(&mut self, doses: &[f64]) -> Result<Corrected, EquilibriumError> {
+        let Mixed { totals, dilution } = self.bath.mixed(doses, None);
+        let Some(balance) = self.balance.as_mut().filter(|_| doses.iter().any(|dose| *dose != 0.0)) else {
+            return Ok(Corrected { totals, dilution, adjustment: None, failure: None });
+        };
+        let mixed = Mixed { totals, dilution };
+        // Left alone the bath is more acid than its set pH when it holds more hydrogen than that pH wants.
+        let wanted = balance.wanted(&mixed, balance.ph)?;
+        let (adjuster, other_ph) = if wanted < 0.0 {
+            (&self.bath.alkali, balance.ph - NEGLIGIBLE_PH)
+        } else {
+            (&self.bath.acid, balance.ph + NEGLIGIBLE_PH)
+        };
+        let negligible = wanted == 0.0 || wanted.signum() != balance.wanted(&mixed, other_ph)?.signum();
+        if negligible {
+            let Mixed { totals, dilution } = mixed;
+            return Ok(Corrected { totals, dilution, adjustment: None, failure: None });
         }
-        let Some(mut balance) = Balance::new(self)? else { return Ok(as_it_is(totals)) };
-        let left_alone = balance.ph_of(&totals)?;
-        if (left_alone - balance.ph).abs() < NEGLIGIBLE_PH {
-            return Ok(as_it_is(totals));
-        }
-        let adjuster = if left_alone < balance.ph { &self.alkali } else { &self.acid };
-        match balance.root(&totals, adjuster)? {
-            Some(dose_g_l) => Ok(Corrected {
-                totals: with(&totals, adjuster, dose_g_l),
-                adjustment: Some(Adjustment { product: adjuster.product.clone(), dose_g_l }),
-                failure: None,
-            }),
-            None => Ok(Corrected {
-                totals,
+        Ok(match balance.root(self.bath, doses, adjuster, wanted)? {
+            Some(dose_g_l) => {
+                let Mixed { totals, dilution } = self.bath.mixed(doses, Some((adjuster, dose_g_l)));
+                let adjustment = Some(Adjustment { product: adjuster.product.clone(), dose_g_l });
+                Corrected { totals, dilution, adjustment, failure: None }
+            }
+            None => Corrected {
+                totals: mixed.totals,
+                dilution: mixed.dilution,
                 adjustment: None,
                 failure: Some(format!(
                     "{} can't bring the pH back to {}; choose a stronger product under adjust",
                     adjuster.product.name,
                     crate::quantity::plain(balance.ph, 2)
                 )),
-            }),
+            },
+        })
+    }
+}
+
+impl Balance<'_> {
+    /// Moles of H⁺ per litre that given totals hold at a pH.
+    fn held(&mut self, totals: &[f64], ph: f64) -> Result<f64, EquilibriumError> {
+        self.points.solve_into(&self.constants, totals, Some(ph), &mut self.solution)?;
+        // What the air brings is there without a product, as the recipe's own hydrogen is: carbonic acid calls for alkali.
+        let of_the_air = self.solution.taken_up(&self.points.bath().system, self.proton);
+        Ok(self.solution.totals[self.proton] - of_the_air)
+    }
+
+    /// H⁺ that a pH wants beyond what is there: negative when alkali is needed.
+    fn wanted(&mut self, mixed: &Mixed, ph: f64) -> Result<f64, EquilibriumError> {
+        let there = mixed.totals[self.proton] + self.unlisted / mixed.dilution;
+        Ok(self.held(&mixed.totals, ph)? - there)
+    }
+
+    /// The pH that a mixture has when nothing holds it.
+    fn ph_of(&mut self, mut mixed: Mixed) -> Result<f64, EquilibriumError> {
+        mixed.totals[self.proton] += self.unlisted / mixed.dilution;
+        self.points.solve_into(&self.constants, &mixed.totals, None, &mut self.solution)?;
+        Ok(self.solution.ph(self.proton))
+    }
+
+    /// Grams per litre of a product that bring the balance to zero, if any amount does, from what is wanted without it.
+    fn root(
+        &mut self,
+        bath: &Bath,
+        doses: &[f64],
+        adjuster: &Adjuster,
+        wanted: f64,
+    ) -> Result<Option<f64>, EquilibriumError> {
+        let ph = self.ph;
+        let mut at = |grams: f64| self.wanted(&bath.mixed(doses, Some((adjuster, grams))), ph);
+        let (mut low, mut f_low) = (0.0, wanted);
+        // Strong acid and alkali bring nothing but their hydrogen, so this is nearly the answer.
+        let straight = wanted / adjuster.per_gram[bath.system.proton.unwrap_or(0)];
+        let mut high = if straight.is_finite() && straight > 0.0 { straight.min(MOST_G_L) } else { 1e-3 };
+        let mut f_high = at(high)?;
+        while f_low.signum() == f_high.signum() {
+            if high > MOST_G_L {
+                return Ok(None);
+            }
+            let secant = high - f_high * (high - low) / (f_high - f_low);
+            (low, f_low) = (high, f_high);
+            // A little beyond where the line points, so that the root is most likely enclosed.
+            high = if secant > high { (high + 1.1 * (secant - high)).min(16.0 * high) } else { 4.0 * high };
+            f_high = at(high)?;
         }
+        // Regula falsi with the weight of a stuck end halved (Illinois rule).
+        let (mut w_low, mut w_high) = (f_low, f_high);
+        let (mut last, mut side) = (f64::NAN, None);
+        for _ in 0..ROOT_STEPS {
+            let middle = (low * w_high - high * w_low) / (w_high - w_low);
+            let f = at(middle)?;
+            if f == 0.0 || (middle - last).abs().min(high - low) <= ROOT_WIDTH * high {
+                return Ok(Some(middle));
+            }
+            last = middle;
+            if f.signum() == f_low.signum() {
+                (low, f_low) = (middle, f);
+                (w_low, w_high) = (f, if side == Some(End::Low) { 0.5 * w_high } else { f_high });
+                side = Some(End::Low);
+            } else {
+                (high, f_high) = (middle, f);
+                (w_high, w_low) = (f, if side == Some(End::High) { 0.5 * w_low } else { f_low });
+                side = Some(End::High);
+            }
+        }
+        Ok(Some(0.5 * (low + high)))
+    }
+}
+
+impl Bath {
+    /// The bath with doses in g/L and with the acid or alkali that brings it back to its set pH; a [`Corrector`] answers
+    /// for many doses.
+    ///
+    /// # Errors
+    /// [`EquilibriumError`] for an ill-posed bath.
+    pub fn corrected(&self, doses: &[f64]) -> Result<Corrected, EquilibriumError> {
+        Corrector::new(self)?.corrected(doses)
     }
 
     /// The pH that the tank reads after doses in g/L and some grams per litre of the product that `adjustment` names;
@@ -178,13 +238,27 @@ impl Bath {
         doses: &[f64],
         adjustment: Option<&Adjustment>,
     ) -> Result<Option<f64>, EquilibriumError> {
-        let Some(mut balance) = Balance::new(self)? else { return Ok(None) };
-        let mut totals = self.totals(doses);
-        if let Some(Adjustment { product, dose_g_l }) = adjustment {
+        let Some(mut balance) = Corrector::new(self)?.balance else { return Ok(None) };
+        let added = adjustment.map(|Adjustment { product, dose_g_l }| {
             let adjuster = if *product == self.alkali.product { &self.alkali } else { &self.acid };
-            totals = with(&totals, adjuster, *dose_g_l);
+            (adjuster, *dose_g_l)
+        });
+        balance.ph_of(self.mixed(doses, added)).map(Some)
+    }
+
+    /// Totals with doses in g/L and some grams per litre of acid or alkali, in the volume that they make.
+    pub(super) fn mixed(&self, doses: &[f64], added: Option<(&Adjuster, f64)>) -> Mixed {
+        let mut mixed = Mixed { totals: self.contents.clone(), dilution: 1.0 };
+        let agents = self.agents.iter().zip(doses);
+        let parts = agents
+            .map(|(agent, dose)| (*dose, &agent.per_gram, agent.litres_per_gram))
+            .chain(added.map(|(adjuster, grams)| (grams, &adjuster.per_gram, adjuster.litres_per_gram)));
+        for (grams, per_gram, litres_per_gram) in parts {
+            mixed.totals.iter_mut().zip(per_gram).for_each(|(total, part)| *total += grams * part);
+            mixed.dilution += grams * litres_per_gram;
         }
-        balance.ph_of(&totals).map(Some)
+        mixed.totals.iter_mut().for_each(|total| *total /= mixed.dilution);
+        mixed
     }
 }
 

@@ -6,6 +6,7 @@
 mod adjust;
 mod air;
 mod demo;
+mod drift;
 mod error;
 mod file;
 mod flags;
@@ -14,10 +15,13 @@ mod operating;
 mod project;
 mod recipe;
 mod resolve;
+mod solving;
+mod wall;
 
-pub use adjust::{Adjuster, Adjustment, Corrected};
+pub use adjust::{Adjuster, Adjustment, Corrected, Corrector};
 pub use air::Air;
 pub use demo::{DEMOS, Demo};
+pub use drift::{Drift, DriftAxis, HardnessRange, LoadRange, MAX_DRIFTS, Position, Span};
 pub use error::BathError;
 pub use file::{FileError, load, read, replace_file, save, write};
 pub use flags::{Flag, flags};
@@ -26,4 +30,6 @@ pub use operating::{Ph, Range};
 pub use project::{
     Adjust, AgentDose, Content, FORMAT, Limit, Project, Rule, SheetDetails, SolidRule, Tank, Trust,
 };
-pub use resolve::{Agent, Bath, Point, ResolvedLimit, Solids, Wall};
+pub use resolve::{Agent, Bath};
+pub use solving::{Point, Points, Solids};
+pub use wall::{Derived, ResolvedDerived, ResolvedLimit, Wall};

@@ -1,7 +1,9 @@
 //! The project as it is saved: what the chemist typed, in the units it was typed in.
 
 use super::air::Air;
+use super::drift::Drift;
 use super::operating::{Ph, Range};
+use super::wall::Derived;
 use crate::chemistry::{OwnConstants, Product};
 use crate::equilibrium::ActivityModel;
 use crate::quantity::{Amount, Level};
@@ -35,6 +37,9 @@ pub struct Project {
     /// The complexing agents to dose.
     #[serde(default)]
     pub agents: Vec<AgentDose>,
+    /// Ranges beside pH and temperature.
+    #[serde(default, skip_serializing_if = "Drift::is_default")]
+    pub drift: Drift,
     /// Ceilings and floors of free metals.
     #[serde(default)]
     pub limits: Vec<Limit>,
@@ -133,7 +138,7 @@ pub struct AgentDose {
 }
 
 /// Ceiling and floor of a free metal.
-#[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
+#[derive(Clone, Debug, Default, PartialEq, Serialize, Deserialize)]
 #[serde(deny_unknown_fields)]
 pub struct Limit {
     /// The metal: component token, symbol or name.
@@ -144,6 +149,9 @@ pub struct Limit {
     /// Free metal must stay over this.
     #[serde(default, skip_serializing_if = "Option::is_none")]
     pub floor: Option<Level>,
+    /// A wall that follows from chemistry.
+    #[serde(default, skip_serializing_if = "Option::is_none")]
+    pub derived: Option<Derived>,
     /// Which wall the limit stands for, and how it was found.
     #[serde(default)]
     pub wall: String,
@@ -224,6 +232,7 @@ impl Project {
             },
             contents: Vec::new(),
             agents: Vec::new(),
+            drift: Drift::default(),
             limits: Vec::new(),
             solids: Vec::new(),
             adjust: Adjust::default(),

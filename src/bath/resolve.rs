@@ -2,15 +2,14 @@
 
 use super::adjust::Adjuster;
 use super::air::{self, Air};
+use super::drift::{self, DriftAxis, Position, Surroundings};
 use super::error::BathError;
 use super::operating::{Ph, Range};
 use super::project::{Project, Rule};
 use super::recipe::{self, Moles};
+use super::wall::{ResolvedLimit, resolve_limits, resolve_rules};
 use crate::chemistry::{Catalogue, ComponentKind, Library, Product};
-use crate::equilibrium::{
-    Constants, Equilibrium, EquilibriumError, LN_10, Problem, Sensitivities, Solver, System, assemble,
-};
-use crate::quantity::kelvin;
+use crate::equilibrium::{System, assemble};
 use std::sync::Arc;
 
 /// A complexing agent with what one gram of its product releases.
@@ -22,41 +21,10 @@ pub struct Agent {
     pub per_gram: Vec<f64>,
     /// System index of the component it is bought for.
     pub active: usize,
+    /// Litres that one gram of product adds to the bath: liquids by their density, solids nothing.
+    pub litres_per_gram: f64,
     /// Largest dose to consider, g/L.
     pub max_g_l: f64,
-}
-
-/// A limit in mol/L.
-#[derive(Clone, Debug, PartialEq)]
-pub struct ResolvedLimit {
-    /// System index of the metal.
-    pub component: usize,
-    /// Free metal must stay under this, mol/L.
-    pub ceiling: Option<f64>,
-    /// Free metal must stay over this, mol/L.
-    pub floor: Option<f64>,
-    /// Which wall it stands for.
-    pub wall: String,
-}
-
-/// A condition that a dose has to meet.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub enum Wall {
-    /// Ceiling of limit number n.
-    Ceiling(usize),
-    /// Floor of limit number n.
-    Floor(usize),
-    /// Solid number n of the system, which must not form.
-    Solid(usize),
-}
-
-/// One point of operation.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub struct Point<'a> {
-    /// pH to hold; `None` lets the charge balance decide.
-    pub ph: Option<f64>,
-    /// Grams of each agent's product per litre of bath.
-    pub doses: &'a [f64],
 }
 
 /// A resolved bath.
@@ -80,19 +48,12 @@ pub struct Bath {
     pub limits: Vec<ResolvedLimit>,
     /// How each solid of the system is treated.
     pub rules: Vec<Rule>,
+    /// What drifts beside pH and temperature.
+    pub drifts: Vec<DriftAxis>,
     /// Product that raises pH.
     pub alkali: Adjuster,
     /// Product that lowers pH.
     pub acid: Adjuster,
-}
-
-/// Which solids take part in an equilibrium.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub enum Solids {
-    /// All that form in the time of a shift: what will be in the tank.
-    Real,
-    /// Only those that may; the others stay dissolved, so that their saturation index tells how far off a dose is.
-    Walls,
 }
 
 impl Bath {
@@ -154,8 +115,8 @@ impl Bath {
             .iter()
             .chain(agents.iter().map(|(_, moles)| moles))
             .chain(adjusters)
-            .flat_map(|moles| moles.keys());
-        for &component in brought {
+            .flat_map(|moles| moles.keys().copied());
+        for component in brought.chain(drift::brought(&project.drift, &library)) {
             if !present.contains(&component) {
                 present.push(component);
             }
@@ -180,13 +141,26 @@ impl Bath {
                     .and_then(|component| present.iter().position(|&known| known == component))
                     .unwrap_or(0),
                 max_g_l: dose.max_g_l,
+                litres_per_gram: litres_per_gram(&product),
                 product,
             })
             .collect();
-        let alkali = Adjuster { per_gram: spread(&alkali_moles), product: alkali };
-        let acid = Adjuster { per_gram: spread(&acid_moles), product: acid };
-        let limits = resolve_limits(project, &library, &present)?;
+        let adjuster = |product: Product, moles: &Moles| Adjuster {
+            per_gram: spread(moles),
+            litres_per_gram: litres_per_gram(&product),
+            product,
+        };
+        let (alkali, acid) = (adjuster(alkali, &alkali_moles), adjuster(acid, &acid_moles));
+        let limits = resolve_limits(project, &library, &present, &system)?;
         let rules = resolve_rules(project, &library, &system, &limits)?;
+        let around = Surroundings {
+            library: &library,
+            catalogue: &catalogue,
+            present: &present,
+            contents: &contents,
+            volume_l: project.tank.volume_l,
+        };
+        let drifts = drift::axes(&project.drift, &around)?;
         let project = project.clone();
         Ok(Bath {
             project,
@@ -198,129 +172,31 @@ impl Bath {
             agents,
             limits,
             rules,
+            drifts,
             alkali,
             acid,
         })
     }
 
-    /// Totals with the given doses, mol/L.
+    /// Totals with the given doses, mol/L; what a liquid product adds to the volume thins all of them.
     pub fn totals(&self, doses: &[f64]) -> Vec<f64> {
-        let mut totals = self.contents.clone();
-        for (agent, dose) in self.agents.iter().zip(doses) {
-            for (total, per_gram) in totals.iter_mut().zip(&agent.per_gram) {
-                *total += dose * per_gram;
-            }
-        }
-        totals
+        self.mixed(doses, None).totals
+    }
+
+    /// Totals at a position of the drifts, from totals at the set point that additions have thinned by `dilution`.
+    pub fn drifted(&self, position: &Position, dilution: f64, totals: &mut [f64]) {
+        drift::move_totals(&self.drifts, position, dilution, totals);
+    }
+
+    /// What is not at its set point, in words: "copper 11.5 g/L, hardness 15 °dH"; empty at the set point.
+    pub fn position_words(&self, position: &Position) -> String {
+        let moved = self.drifts.iter().zip(&position.0).filter(|(axis, t)| axis.value(**t) != axis.set);
+        moved.map(|(axis, t)| axis.words(*t)).collect::<Vec<_>>().join(", ")
     }
 
     /// The doses of the project, g/L.
     pub fn doses(&self) -> Vec<f64> {
         self.project.agents.iter().map(|agent| agent.dose_g_l).collect()
-    }
-
-    /// Constants at a temperature in °C.
-    pub fn constants_at(&self, temperature_c: f64) -> Constants {
-        self.system.constants_at(kelvin(temperature_c), self.project.activity)
-    }
-
-    /// What will be in the tank at an operating point: solids that form in the time of a shift form.
-    ///
-    /// # Errors
-    /// [`EquilibriumError`] for an ill-posed bath.
-    pub fn solve(
-        &self,
-        solver: &mut Solver,
-        constants: &Constants,
-        point: Point,
-    ) -> Result<Equilibrium, EquilibriumError> {
-        self.solve_with(solver, constants, point, Solids::Real)
-    }
-
-    /// As [`Bath::solve`], with solids that must not form kept in solution.
-    pub fn solve_with(
-        &self,
-        solver: &mut Solver,
-        constants: &Constants,
-        point: Point,
-        solids: Solids,
-    ) -> Result<Equilibrium, EquilibriumError> {
-        let totals = self.totals(point.doses);
-        self.solve_totals(solver, constants, &totals, point.ph, solids)
-    }
-
-    /// Solves for given totals; with a free pH the total of H⁺ decides it.
-    pub fn solve_totals(
-        &self,
-        solver: &mut Solver,
-        constants: &Constants,
-        totals: &[f64],
-        ph: Option<f64>,
-        solids: Solids,
-    ) -> Result<Equilibrium, EquilibriumError> {
-        let held = self.held(ph);
-        let (may_form, open_to) = (self.may_form(solids), self.open_to());
-        solver.solve(&Problem {
-            system: &self.system,
-            constants,
-            totals,
-            held: &held,
-            may_form: &may_form,
-            open_to: &open_to,
-            counter_ion: true,
-        })
-    }
-
-    /// Exact derivatives at a solved point, handed to `ask`.
-    ///
-    /// # Errors
-    /// [`EquilibriumError`] when the response is singular.
-    pub fn sensitivities<T>(
-        &self,
-        constants: &Constants,
-        totals: &[f64],
-        ph: Option<f64>,
-        solids: Solids,
-        solution: &Equilibrium,
-        ask: impl FnOnce(&Sensitivities) -> T,
-    ) -> Result<T, EquilibriumError> {
-        let (held, may_form, open_to) = (self.held(ph), self.may_form(solids), self.open_to());
-        let problem = Problem {
-            system: &self.system,
-            constants,
-            totals,
-            held: &held,
-            may_form: &may_form,
-            open_to: &open_to,
-            counter_ion: true,
-        };
-        Ok(ask(&Sensitivities::new(problem, solution)?))
-    }
-
-    fn held(&self, ph: Option<f64>) -> Vec<Option<f64>> {
-        (0..self.system.components.len())
-            .map(|i| if self.system.proton == Some(i) { ph.map(|ph| -ph * LN_10) } else { None })
-            .collect()
-    }
-
-    fn may_form(&self, solids: Solids) -> Vec<bool> {
-        self.rules
-            .iter()
-            .map(|rule| match solids {
-                Solids::Real => *rule != Rule::TooSlow,
-                Solids::Walls => *rule == Rule::MayForm,
-            })
-            .collect()
-    }
-
-    /// Range of a held pH.
-    pub fn ph(&self) -> Option<Range> {
-        self.project.tank.ph.range()
-    }
-
-    /// The held pH at the set point.
-    pub fn ph_set(&self) -> Option<f64> {
-        self.ph().map(|range| range.set)
     }
 
     /// System indices of the metals.
@@ -339,6 +215,12 @@ impl Bath {
         let found = self.library.solids.iter().find(|known| known.record.token == *token);
         found.map_or(token, |known| &known.record.name)
     }
+}
+
+/// Litres per gram of a liquid. A dissolved solid is counted as adding none: a few per cent of its own weight, which
+/// the working volume is never known to.
+fn litres_per_gram(product: &Product) -> f64 {
+    product.density_g_ml.filter(|_| product.is_liquid()).map_or(0.0, |density| 1e-3 / density)
 }
 
 fn product_named(field: &str, name: &str, catalogue: &Catalogue) -> Result<Product, BathError> {
@@ -392,79 +274,4 @@ fn check_tank(project: &Project) -> Result<(), BathError> {
         }
     }
     Ok(())
-}
-
-fn resolve_limits(
-    project: &Project,
-    library: &Library,
-    present: &[usize],
-) -> Result<Vec<ResolvedLimit>, BathError> {
-    let mut limits = Vec::new();
-    for (i, limit) in project.limits.iter().enumerate() {
-        let field = format!("limits[{i}]");
-        let unknown = |fix: &str| BathError::Unknown {
-            field: format!("{field}.metal"),
-            name: limit.metal.clone(),
-            fix: fix.to_owned(),
-        };
-        let index = library.component_named(&limit.metal).ok_or_else(|| {
-            unknown("no component has this name; write a metal like \"Cu+2\" or \"copper\"")
-        })?;
-        let component = present.iter().position(|&known| known == index).ok_or_else(|| {
-            unknown("this metal is not in the bath; add it under contents, or remove the limit")
-        })?;
-        let mass = library.components[index].molar_mass().unwrap_or(f64::NAN);
-        let level = |part: &str, level: Option<crate::quantity::Level>| match level {
-            None => Ok(None),
-            Some(level) => {
-                let value = level.mol_per_litre(mass);
-                if value.is_finite() && value > 0.0 && value < 100.0 {
-                    Ok(Some(value))
-                } else {
-                    let fix = "give a level above zero, like \"pM 10.8\" or \"2e-8 mol/L\"";
-                    Err(BathError::Number { field: format!("{field}.{part}"), value: level.value(), fix })
-                }
-            }
-        };
-        let (ceiling, floor) = (level("ceiling", limit.ceiling)?, level("floor", limit.floor)?);
-        if let (Some(ceiling), Some(floor)) = (ceiling, floor)
-            && floor >= ceiling
-        {
-            let fix = "the floor is not under the ceiling; raise the ceiling or lower the floor";
-            return Err(BathError::Number { field: format!("{field}.floor"), value: floor, fix });
-        }
-        limits.push(ResolvedLimit { component, ceiling, floor, wall: limit.wall.clone() });
-    }
-    Ok(limits)
-}
-
-fn resolve_rules(
-    project: &Project,
-    library: &Library,
-    system: &System,
-    limits: &[ResolvedLimit],
-) -> Result<Vec<Rule>, BathError> {
-    for (i, rule) in project.solids.iter().enumerate() {
-        if !library.solids.iter().any(|solid| solid.record.token == rule.solid) {
-            return Err(BathError::Unknown {
-                field: format!("solids[{i}].solid"),
-                name: rule.solid.clone(),
-                fix: "no solid has this name; write it like \"CaCO3(cr)\", or add it under constants"
-                    .to_owned(),
-            });
-        }
-    }
-    let limited = |components: &[(usize, f64)]| {
-        limits.iter().any(|limit| components.iter().any(|&(component, _)| component == limit.component))
-    };
-    Ok(system
-        .solids
-        .iter()
-        .map(|solid| match project.solids.iter().rev().find(|rule| rule.solid == solid.token) {
-            Some(rule) => rule.rule,
-            None if solid.aged => Rule::TooSlow,
-            None if limited(&solid.components) => Rule::MustNotForm,
-            None => Rule::MayForm,
-        })
-        .collect())
 }

@@ -5,7 +5,8 @@ use super::table::Table;
 use super::{CommandError, Outcome, choose_agent, print};
 use crate::bath::{Bath, Wall};
 use crate::dosing::{
-    Assessment, Change, Hold, Plan, Reason, Search, Verdict, plan, search, share_of_limit, verdict, why_none,
+    Assessment, Change, Hold, Plan, Reason, Search, Verdict, place_words, plan, search, share_of_limit,
+    verdict, wall_name, why_none,
 };
 use crate::quantity::{fixed, p_value, percent, significant};
 use serde_json::{Value, json};
@@ -74,12 +75,15 @@ fn wall_json(bath: &Bath, assessment: &Assessment) -> Vec<Value> {
                 Wall::Ceiling(i) => ("ceiling", bath.system.components[bath.limits[i].component].clone()),
                 Wall::Floor(i) => ("floor", bath.system.components[bath.limits[i].component].clone()),
                 Wall::Solid(k) => ("solid", bath.system.solids[k].token.clone()),
+                Wall::Derived(i) => ("derived", bath.system.components[bath.limits[i].component].clone()),
             };
             json!({
                 "wall": kind,
                 "of": of,
                 "pH": wall.worst.ph,
                 "temperature_C": wall.worst.temperature_c,
+                "drifts": bath.drifts.iter().zip(&wall.worst.position.0).map(|(axis, t)| json!({
+                    "of": axis.name, "value": axis.value(*t), "unit": axis.unit })).collect::<Vec<_>>(),
                 "value": wall.worst.value,
                 "sigma_log10": wall.worst.sigma,
                 "share_of_limit": 10f64.powf(wall.excess),
@@ -217,7 +221,7 @@ pub fn limits_table(bath: &Bath, before: &Assessment, after: &Assessment) -> Str
             Wall::Floor(i) => {
                 (bath.component(bath.limits[i].component).name.clone(), "floor", bath.limits[i].floor)
             }
-            Wall::Solid(_) => continue,
+            Wall::Solid(_) | Wall::Derived(_) => continue,
         };
         table.row([
             name,
@@ -227,7 +231,7 @@ pub fn limits_table(bath: &Bath, before: &Assessment, after: &Assessment) -> Str
             p_value(new.worst.value),
             share_of_limit(new.excess),
             share_of_limit(new.excess_95),
-            format!("pH {}, {} °C", fixed(new.worst.ph, 2), fixed(new.worst.temperature_c, 0)),
+            place_words(bath, &new.worst),
         ]);
     }
     let mut text = table.text();
@@ -239,6 +243,18 @@ pub fn limits_table(bath: &Bath, before: &Assessment, after: &Assessment) -> Str
                 fixed(wall.excess, 2)
             );
         }
+    }
+    for wall in after.walls.iter().filter(|wall| matches!(wall.wall, Wall::Derived(_))) {
+        text += &format!(
+            "  {} of {}, {} at 95 %, at its worst ({})\n",
+            share_of_limit(wall.excess),
+            wall_name(bath, wall.wall),
+            share_of_limit(wall.excess_95),
+            place_words(bath, &wall.worst)
+        );
+    }
+    for limit in 0..bath.limits.len() {
+        text += &format!("  {}\n", bath.limit_line(limit));
     }
     text
 }

@@ -3,8 +3,11 @@
 //! This floor asks the bath for equilibria and knows neither sheets nor windows.
 
 mod assess;
+mod curve;
+mod extreme;
 mod ledger;
 mod measure;
+mod places;
 mod plan;
 mod reason;
 mod search;
@@ -16,4 +19,4 @@ pub use measure::{Direction, Measured, ROUNDING_FLAG, measure};
 pub use plan::{Addition, Plan, Step, plan};
 pub use reason::{Change, Reason, why_none};
 pub use search::{Band, Found, Hold, Search, search};
-pub use verdict::{State, Verdict, share as share_of_limit, verdict, wall_name};
+pub use verdict::{State, Verdict, place as place_words, share as share_of_limit, verdict, wall_name};

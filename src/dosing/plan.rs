@@ -88,7 +88,7 @@ pub fn plan(bath: &Bath, doses: &[f64]) -> Result<Plan, EquilibriumError> {
         let measured = measure(product, *dose_g_l, volume, details, Direction::Down);
         additions.push(Addition { product: product.clone(), measured, exact_g_l: *dose_g_l, agent: None });
     }
-    let mut assessor = Assessor::new(bath);
+    let mut assessor = Assessor::new(bath)?;
     let none = vec![0.0; doses.len()];
     let before = assessor.assess(&none)?;
     let after = assessor.assess(&rounded_doses)?;

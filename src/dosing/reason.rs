@@ -58,12 +58,14 @@ const OFFERS: usize = 3;
 pub fn why_none(bath: &Bath, result: &Search) -> Result<Reason, EquilibriumError> {
     let mut doses = bath.doses();
     doses[result.agent] = result.best.0;
-    let best = Assessor::new(bath).assess(&doses)?;
+    let best = Assessor::new(bath)?.assess(&doses)?;
     let ledger = match best.nearest() {
         Some(wall) => {
             let constants = bath.constants_at(wall.worst.temperature_c);
             let ph = bath.ph().map(|_| wall.worst.ph);
-            let totals = bath.corrected(&doses)?.totals;
+            let corrected = bath.corrected(&doses)?;
+            let mut totals = corrected.totals;
+            bath.drifted(&wall.worst.position, corrected.dilution, &mut totals);
             let solution = bath.solve_totals(&mut Solver::new(), &constants, &totals, ph, Solids::Walls)?;
             ledger(bath, &solution, bath.agents[result.agent].active)
         }
@@ -88,7 +90,7 @@ fn other_ph(bath: &Bath, result: &Search) -> Result<Option<Change>, EquilibriumE
             if moved.low < -1.0 || moved.high > 15.0 {
                 continue;
             }
-            let mut assessor = Assessor::over(bath, Some(moved));
+            let mut assessor = Assessor::over(bath, Some(moved))?;
             // A few doses tell whether a whole search is worth its time.
             let mut doses = bath.doses();
             let mut holds = false;
@@ -136,7 +138,7 @@ fn other_agents(bath: &Bath, agent: usize) -> Result<Vec<Change>, EquilibriumErr
             locked: false,
         };
         let Ok(other) = Bath::resolve(&project) else { continue };
-        let mut assessor = Assessor::new(&other);
+        let Ok(mut assessor) = Assessor::new(&other) else { continue };
         let mut doses = other.doses();
         let mut holds = false;
         for share in [0.05, 0.2, 0.5, 1.0] {

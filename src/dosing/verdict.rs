@@ -2,7 +2,7 @@
 
 use super::assess::{Assessment, WallReading};
 use super::search::{Hold, Search};
-use crate::bath::{Bath, Wall};
+use crate::bath::{Bath, ResolvedDerived, Wall};
 use crate::quantity::{fixed, p_value, percent, significant};
 
 /// Whether the doses hold.
@@ -116,16 +116,25 @@ pub fn wall_name(bath: &Bath, wall: Wall) -> String {
         Wall::Ceiling(i) => format!("the {} ceiling", bath.component(bath.limits[i].component).name),
         Wall::Floor(i) => format!("the {} floor", bath.component(bath.limits[i].component).name),
         Wall::Solid(k) => format!("saturation with {}", bath.solid_name(k)),
+        Wall::Derived(i) => {
+            let metal = &bath.component(bath.limits[i].component).name;
+            match bath.limits[i].derived {
+                Some(ResolvedDerived::Solid(k, _)) => {
+                    format!("the margin under saturation with {}", bath.solid_name(k))
+                }
+                Some(ResolvedDerived::Discharge(_)) => format!("the discharge limit of {metal}"),
+                _ => format!("the immersion wall of {metal}"),
+            }
+        }
     }
 }
 
-/// Where a worst case is: "pH 9.2, 45 °C".
-fn place(reading: &super::Reading) -> String {
-    if reading.ph.is_finite() {
-        format!("pH {}, {} °C", fixed(reading.ph, 1), fixed(reading.temperature_c, 0))
-    } else {
-        format!("{} °C", fixed(reading.temperature_c, 0))
-    }
+/// Where a worst case is: "pH 9.2, 45 °C, copper 11.5 g/L".
+pub fn place(bath: &Bath, reading: &super::Reading) -> String {
+    let ph = reading.ph.is_finite().then(|| format!("pH {}", fixed(reading.ph, 1)));
+    let temperature = Some(format!("{} °C", fixed(reading.temperature_c, 0)));
+    let drifts = Some(bath.position_words(&reading.position)).filter(|words| !words.is_empty());
+    [ph, temperature, drifts].into_iter().flatten().collect::<Vec<_>>().join(", ")
 }
 
 fn reaches(bath: &Bath, wall: &WallReading) -> String {
@@ -142,11 +151,20 @@ fn reaches(bath: &Bath, wall: &WallReading) -> String {
             )
         }
         Wall::Solid(k) => format!("{} reaches {} of saturation", bath.solid_name(k), share(wall.excess)),
+        Wall::Derived(i) => {
+            let metal = &bath.component(bath.limits[i].component).name;
+            let what = match bath.limits[i].derived {
+                Some(ResolvedDerived::Solid(k, _)) => bath.solid_name(k).to_owned(),
+                Some(ResolvedDerived::Discharge(_)) => format!("dissolved {metal}"),
+                _ => format!("free {metal}"),
+            };
+            format!("{what} reaches {} of {}", share(wall.excess), wall_name(bath, wall.wall))
+        }
     }
 }
 
 fn held(bath: &Bath, assessment: &Assessment, nearest: &WallReading, surest: &WallReading) -> String {
-    let mut sentence = format!("At its worst ({}) {}", place(&nearest.worst), reaches(bath, nearest));
+    let mut sentence = format!("At its worst ({}) {}", place(bath, &nearest.worst), reaches(bath, nearest));
     if nearest.wall == surest.wall {
         sentence += &match surest.wall {
             Wall::Floor(_) => {
@@ -184,7 +202,7 @@ fn unsure(bath: &Bath, nearest: &WallReading, surest: &WallReading, search: Opti
 }
 
 fn crossed(bath: &Bath, wall: &WallReading) -> String {
-    let at = place(&wall.worst);
+    let at = place(bath, &wall.worst);
     match wall.wall {
         Wall::Ceiling(i) => {
             let component = bath.component(bath.limits[i].component);
@@ -204,5 +222,6 @@ fn crossed(bath: &Bath, wall: &WallReading) -> String {
         Wall::Solid(k) => {
             format!("At {at} {} forms (saturation index {}).", bath.solid_name(k), fixed(wall.excess, 1))
         }
+        Wall::Derived(_) => format!("At {at} {}.", reaches(bath, wall)),
     }
 }

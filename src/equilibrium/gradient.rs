@@ -111,8 +111,7 @@ impl Sensitivities<'_> {
                 }
             }
             for sum in activity::sums_of(problem, j) {
-                wanted[m + s + sum] +=
-                    weight * activity::response(problem, &self.coefficients, sums, j, sum);
+                wanted[m + s + sum] += weight * activity::response(problem, &self.coefficients, sums, j, sum);
             }
         }
         if let Value::Saturation(solid) = value {
@@ -131,9 +130,8 @@ impl Sensitivities<'_> {
             }
             let balances: f64 =
                 entry.components.iter().filter_map(|&(i, nu)| Some(nu * y[self.places[i]?])).sum();
-            let of_sums: f64 = (0..sums.len())
-                .map(|sum| whole_weight(problem, solution, sum, j) * y[m + s + sum])
-                .sum();
+            let of_sums: f64 =
+                (0..sums.len()).map(|sum| whole_weight(problem, solution, sum, j) * y[m + s + sum]).sum();
             weights[j] + c * (of_sums - balances)
         });
         let mut gradient = Gradient {

@@ -34,9 +34,9 @@ pub use activity::{ActivityModel, DAVIES_LIMIT, ION_INTERACTION_LIMIT, Interacti
 pub use assemble::assemble;
 pub use certificate::Certificate;
 pub use error::EquilibriumError;
+pub use gradient::{Gradient, Value};
 pub use potential::nernst;
 pub use problem::{Equilibrium, Problem};
-pub use gradient::{Gradient, Value};
 pub use sensitivity::{Response, Sensitivities};
 pub use solver::Solver;
 pub use system::{Constants, GasEntry, SolidEntry, SpeciesEntry, System, SystemParts, Terms};

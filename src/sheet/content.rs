@@ -177,7 +177,7 @@ fn targets(bath: &Bath, plan: &Plan) -> Vec<Target> {
             let (limit, level, kind) = match after.wall {
                 crate::bath::Wall::Ceiling(i) => (i, bath.limits[i].ceiling?, "ceiling"),
                 crate::bath::Wall::Floor(i) => (i, bath.limits[i].floor?, "floor"),
-                crate::bath::Wall::Solid(_) => return None,
+                crate::bath::Wall::Solid(_) | crate::bath::Wall::Derived(_) => return None,
             };
             let component = bath.component(bath.limits[limit].component);
             let predicted = |excess: f64, value: f64| {

@@ -4,7 +4,7 @@ use super::content::wall_words;
 use super::model::{Align, Column, Table};
 use crate::bath::Bath;
 use crate::chemistry::{pretty, pretty_reaction};
-use crate::dosing::{Plan, share_of_limit};
+use crate::dosing::{Plan, place_words, share_of_limit};
 use crate::equilibrium::{ActivityModel, Equilibrium, LN_10};
 use crate::quantity::{fixed, kelvin, p_value, percent, significant};
 
@@ -20,7 +20,7 @@ pub(super) fn margins_table(bath: &Bath, plan: &Plan) -> Table {
     let rows = plan.after.walls.iter().zip(&plan.before.walls).enumerate().map(|(i, (after, before))| {
         vec![
             wall_words(bath, &plan.after, i),
-            format!("pH {}, {} °C", fixed(after.worst.ph, 2), fixed(after.worst.temperature_c, 0)),
+            place_words(bath, &after.worst),
             p_value(after.worst.value),
             share_of_limit(before.excess),
             share_of_limit(after.excess),

@@ -103,7 +103,7 @@ pub fn quick(request: &Request) -> Result<Quick, BathError> {
     let corrected = bath.corrected(&doses)?;
     let solution =
         bath.solve_totals(&mut Solver::new(), &constants, &corrected.totals, bath.ph_set(), Solids::Real)?;
-    let assessment = Assessor::new(&bath).assess(&doses)?;
+    let assessment = Assessor::new(&bath)?.assess(&doses)?;
     let agents = (0..bath.present.len()).filter(|&i| {
         bath.component(i).kind == ComponentKind::Agent
             && solution.totals[i] > 0.0
@@ -134,13 +134,13 @@ pub fn thorough(request: &Request) -> Result<Thorough, BathError> {
     let bath = Bath::resolve(&request.project)?;
     let doses = bath.doses();
     let mut searches = Vec::new();
-    if Assessor::new(&bath).has_walls() {
+    if Assessor::new(&bath)?.has_walls() {
         for agent in 0..bath.agents.len() {
             searches.push(search(&bath, agent)?);
         }
     }
     let plan = plan(&bath, &doses)?;
-    let assessment = Assessor::new(&bath).assess(&doses)?;
+    let assessment = Assessor::new(&bath)?.assess(&doses)?;
     let free =
         bath.project.agents.iter().position(|agent| !agent.locked).and_then(|agent| searches.get(agent));
     let verdict = verdict(&bath, &assessment, free);

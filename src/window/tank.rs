@@ -477,7 +477,7 @@ fn add_limit(app: &mut App, ui: &mut Ui, done: &mut Option<String>) {
         // A ceiling where the bath stands now: something to move, and no verdict made up.
         let ceiling = Some(Level::P((p * 10.0).round() / 10.0));
         let wall = "typed, from shop experience".to_owned();
-        app.document.project.limits.push(Limit { metal: metal.clone(), ceiling, floor: None, wall });
+        app.document.project.limits.push(Limit { metal: metal.clone(), ceiling, wall, ..Limit::default() });
         *done = Some(format!("add a limit for {metal}"));
     }
 }

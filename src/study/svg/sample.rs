@@ -36,6 +36,7 @@ pub fn limit(metal: &str, ceiling: Option<f64>, floor: Option<f64>, wall: &str) 
         ceiling: ceiling.map(Level::P),
         floor: floor.map(Level::P),
         wall: wall.to_owned(),
+        ..Limit::default()
     }
 }
 
