@@ -3,7 +3,7 @@
 //! Solids that must not form are kept in solution here: their saturation index then says how far off a dose is, and
 //! wherever they do not form the result is that of the real bath.
 
-use super::places::{Objective, Place, Places, Survey};
+use super::places::{FAR, Objective, Place, Places, Survey};
 use crate::bath::{Bath, Corrected, Position, Range, Wall};
 use crate::equilibrium::{EquilibriumError, Value};
 
@@ -172,26 +172,41 @@ impl<'a> Assessor<'a> {
         dosed: &Corrected,
         survey: &Survey,
     ) -> Result<Vec<WorstPlaces>, EquilibriumError> {
-        let mut found = Vec::with_capacity(self.walls.len());
-        for number in 0..self.walls.len() {
-            let value = self.bath.limited_value(self.walls[number]);
-            let (plain, excess) = survey.worst[number];
-            let mut worst = WorstPlaces { plain, excess, sure: plain, excess_95: f64::NEG_INFINITY };
-            let mut near: Vec<(Place, f64)> =
-                survey.of(number).filter(|(_, score)| *score > excess - CONFIDENCE_REACH).collect();
+        let values: Vec<Value> = self.walls.iter().map(|wall| self.bath.limited_value(*wall)).collect();
+        let mut found: Vec<WorstPlaces> = survey
+            .worst
+            .iter()
+            .take(values.len())
+            .map(|&(plain, excess)| WorstPlaces { plain, excess, sure: plain, excess_95: f64::NEG_INFINITY })
+            .collect();
+        // Each place is solved once for all the walls that it is near the worst of.
+        let mut asked: Vec<(Place, Vec<(usize, f64)>)> = Vec::new();
+        for (wall, worst) in found.iter().enumerate() {
+            let mut near: Vec<(Place, f64)> = match worst.excess > FAR {
+                true => {
+                    survey.of(wall).filter(|(_, score)| *score > worst.excess - CONFIDENCE_REACH).collect()
+                }
+                false => Vec::new(),
+            };
             near.sort_by(|a, b| b.1.total_cmp(&a.1));
             near.truncate(CONFIDENCE_PLACES);
-            for (place, score) in std::iter::once((plain, excess)).chain(near) {
-                let excess_95 = if score.is_finite() {
-                    score + CONFIDENCE_95 * self.places.sigmas(dosed, &place, &[value])?[0]
-                } else {
-                    score
-                };
+            for (place, score) in std::iter::once((worst.plain, worst.excess)).chain(near) {
+                match asked.iter_mut().find(|(known, _)| *known == place) {
+                    Some((_, walls)) => walls.push((wall, score)),
+                    None => asked.push((place, vec![(wall, score)])),
+                }
+            }
+        }
+        for (place, walls) in asked {
+            let wanted: Vec<Value> = walls.iter().map(|(wall, _)| values[*wall]).collect();
+            let sigmas = self.places.sigmas(dosed, &place, &wanted)?;
+            for ((wall, score), sigma) in walls.into_iter().zip(sigmas) {
+                let excess_95 = if score.is_finite() { score + CONFIDENCE_95 * sigma } else { score };
+                let worst = &mut found[wall];
                 if excess_95 > worst.excess_95 {
                     (worst.sure, worst.excess_95) = (place, excess_95);
                 }
             }
-            found.push(worst);
         }
         Ok(found)
     }

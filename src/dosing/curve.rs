@@ -5,7 +5,7 @@ use super::extreme::crossing;
 use super::places::{Objective, Place};
 use super::search::{Band, Hold};
 use crate::bath::{Bath, Corrected};
-use crate::equilibrium::EquilibriumError;
+use crate::equilibrium::{EquilibriumError, Value};
 
 /// Evenly spaced doses sampled before crossings are refined, and halvings of the first of them towards zero, where free
 /// metal falls by orders of magnitude.
@@ -14,7 +14,7 @@ const HALVINGS: usize = 6;
 /// A dose holds when its excess (log10) is under this: a rounding error inside the wall, never outside.
 const TOUCH: f64 = -1e-9;
 /// Width of a crossing as a share of the largest dose.
-const WIDTH: f64 = 1e-9;
+const WIDTH: f64 = 1e-7;
 const DIP_STEPS: usize = 16;
 /// A place is worth adding when it is worse (log10) by this than those known.
 const WORSE: f64 = 1e-9;
@@ -91,7 +91,8 @@ impl<'a, 'b> Curve<'a, 'b> {
 
     /// Adds the worst places of a dose; whether any was worse than those known.
     pub fn learn(&mut self, dose: f64) -> Result<bool, EquilibriumError> {
-        if self.learned.contains(&dose) {
+        let known = |learned: &f64| (learned - dose).abs() <= 2.0 * WIDTH * self.max;
+        if self.learned.iter().any(known) {
             return Ok(false);
         }
         self.learned.push(dose);
@@ -106,6 +107,7 @@ impl<'a, 'b> Curve<'a, 'b> {
                 for place in [wall.plain, wall.sure] {
                     if !self.places.contains(&place) {
                         self.places.push(place);
+                        self.assessor.places.seat(place);
                     }
                 }
             }
@@ -132,7 +134,8 @@ impl<'a, 'b> Curve<'a, 'b> {
     pub fn learn_from_bands(&mut self) -> Result<bool, EquilibriumError> {
         let mut gained = false;
         for band in self.bands().iter().filter(|band| band.hold != Hold::Not) {
-            for dose in [band.from, band.to, 0.5 * (band.from + band.to)] {
+            let middle = (band.hold == Hold::Sure).then_some(0.5 * (band.from + band.to));
+            for dose in [band.from, band.to].into_iter().chain(middle) {
                 gained |= self.learn(dose)?;
             }
         }
@@ -169,14 +172,18 @@ impl<'a, 'b> Curve<'a, 'b> {
             sample.sure = sample.plain;
             return Ok(());
         }
-        for (number, score) in self.scores.iter().enumerate() {
-            if *score <= sample.plain - CONFIDENCE_REACH || !score.is_finite() {
+        for (scores, place) in self.scores.chunks_exact(walls).zip(&self.places[first..]) {
+            let near = |score: &f64| *score > sample.plain - CONFIDENCE_REACH && score.is_finite();
+            let near: Vec<usize> = (0..walls).filter(|wall| near(&scores[*wall])).collect();
+            if near.is_empty() {
                 continue;
             }
-            let (place, wall) = (self.places[first + number / walls], number % walls);
-            let value = self.bath.limited_value(self.assessor.walls[wall]);
-            let sigma = self.assessor.places.sigmas(&sample.dosed, &place, &[value])?[0];
-            sample.sure = sample.sure.max(score + CONFIDENCE_95 * sigma);
+            let values: Vec<Value> =
+                near.iter().map(|wall| self.bath.limited_value(self.assessor.walls[*wall])).collect();
+            let sigmas = self.assessor.places.sigmas(&sample.dosed, place, &values)?;
+            for (wall, sigma) in near.into_iter().zip(sigmas) {
+                sample.sure = sample.sure.max(scores[wall] + CONFIDENCE_95 * sigma);
+            }
         }
         sample.sure = sample.sure.max(sample.plain);
         Ok(())

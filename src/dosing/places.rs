@@ -15,7 +15,7 @@ const ROUNDS: usize = 4;
 /// Gain (log10) that is worth another round.
 const GAIN: f64 = 1e-9;
 /// What lies this far (log10) under its wall is not refined: nobody asks for its third digit.
-const FAR: f64 = -2.0;
+pub(super) const FAR: f64 = -2.0;
 
 /// A point of the operating window.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -63,6 +63,8 @@ pub(super) struct Places<'a> {
     ph: Vec<Option<f64>>,
     set: Place,
     points: Points<'a>,
+    /// A solver of its own for each place that is asked again and again, so that it starts from its last dose.
+    seats: Vec<(Place, Points<'a>)>,
     corrector: Corrector<'a>,
     totals: Vec<f64>,
     solution: Equilibrium,
@@ -88,6 +90,7 @@ impl<'a> Places<'a> {
             ),
             set,
             points: Points::new(bath, Solids::Walls),
+            seats: Vec::new(),
             corrector: Corrector::new(bath)?,
             totals: Vec::new(),
             solution: Equilibrium::default(),
@@ -108,6 +111,13 @@ impl<'a> Places<'a> {
         self.corrector.corrected(doses)
     }
 
+    /// Gives a place a solver of its own.
+    pub fn seat(&mut self, place: Place) {
+        if self.seats.iter().all(|(known, _)| *known != place) {
+            self.seats.push((place, Points::new(self.bath, Solids::Walls)));
+        }
+    }
+
     /// The bath at a place; solids that must not form stay dissolved.
     ///
     /// # Errors
@@ -116,7 +126,9 @@ impl<'a> Places<'a> {
         let level = self.level(place.temperature_c);
         self.totals.clone_from(&dosed.totals);
         self.bath.drifted(&place.position, dosed.dilution, &mut self.totals);
-        self.points.solve_into(&self.levels[level].1, &self.totals, place.ph, &mut self.solution)?;
+        let seat = self.seats.iter_mut().find(|(known, _)| known == place).map(|(_, points)| points);
+        let points = seat.unwrap_or(&mut self.points);
+        points.solve_into(&self.levels[level].1, &self.totals, place.ph, &mut self.solution)?;
         Ok(&self.solution)
     }
 
