@@ -50,7 +50,7 @@ pub(super) struct Mixed {
     pub dilution: f64,
 }
 
-/// Which end of a bracket moved last.
+/// Which end of a bracket stayed.
 #[derive(Clone, Copy, PartialEq)]
 enum End {
     Low,
@@ -64,6 +64,9 @@ const MOST_G_L: f64 = 1000.0;
 /// Steps of the root search, and its relative width at the end.
 const ROOT_STEPS: usize = 60;
 const ROOT_WIDTH: f64 = 1e-11;
+/// The same of the secant that goes before it; a width of the last step.
+const SECANT_STEPS: usize = 12;
+const SECANT_WIDTH: f64 = 1e-6;
 
 /// The hydrogen balance of a bath at its set point, kept for many doses.
 #[derive(Clone, Debug)]
@@ -82,6 +85,8 @@ struct Balance<'a> {
     proton: usize,
     /// Moles of H⁺ per litre that the bath as it stands holds beyond what its recipe lists.
     unlisted: f64,
+    /// The last root over what the hydrogen of the product alone would ask for: close to that of the next dose.
+    share: f64,
 }
 
 impl<'a> Corrector<'a> {
@@ -100,6 +105,7 @@ impl<'a> Corrector<'a> {
             ph,
             proton,
             unlisted: 0.0,
+            share: 1.0,
         };
         balance.unlisted = balance.held(&bath.contents, ph)? - bath.contents[proton];
         Ok(Self { bath, balance: Some(balance) })
@@ -178,44 +184,79 @@ impl Balance<'_> {
         wanted: f64,
     ) -> Result<Option<f64>, EquilibriumError> {
         let ph = self.ph;
-        let mut at = |grams: f64| self.wanted(&bath.mixed(doses, Some((adjuster, grams))), ph);
-        let (mut low, mut f_low) = (0.0, wanted);
         // Strong acid and alkali bring nothing but their hydrogen, so this is nearly the answer.
-        let straight = wanted / adjuster.per_gram[bath.system.proton.unwrap_or(0)];
-        let mut high = if straight.is_finite() && straight > 0.0 { straight.min(MOST_G_L) } else { 1e-3 };
-        let mut f_high = at(high)?;
-        while f_low.signum() == f_high.signum() {
-            if high > MOST_G_L {
-                return Ok(None);
-            }
-            let secant = high - f_high * (high - low) / (f_high - f_low);
-            (low, f_low) = (high, f_high);
-            // A little beyond where the line points, so that the root is most likely enclosed.
-            high = if secant > high { (high + 1.1 * (secant - high)).min(16.0 * high) } else { 4.0 * high };
-            f_high = at(high)?;
+        let straight = wanted / adjuster.per_gram[self.proton];
+        let guess = straight * self.share;
+        let mut at = |grams: f64| self.wanted(&bath.mixed(doses, Some((adjuster, grams))), ph);
+        let found = match guess.is_finite() && guess > 0.0 {
+            true => secant_root(wanted, guess, &mut at)?,
+            false => None,
+        };
+        let root = match found {
+            Some(root) => Some(root),
+            None => enclosed_root(wanted, at)?,
+        };
+        if let Some(root) = root.filter(|_| guess.is_finite()) {
+            self.share = root / straight;
         }
-        // Regula falsi with the weight of a stuck end halved (Illinois rule).
-        let (mut w_low, mut w_high) = (f_low, f_high);
-        let (mut last, mut side) = (f64::NAN, None);
-        for _ in 0..ROOT_STEPS {
-            let middle = (low * w_high - high * w_low) / (w_high - w_low);
-            let f = at(middle)?;
-            if f == 0.0 || (middle - last).abs().min(high - low) <= ROOT_WIDTH * high {
-                return Ok(Some(middle));
-            }
-            last = middle;
-            if f.signum() == f_low.signum() {
-                (low, f_low) = (middle, f);
-                (w_low, w_high) = (f, if side == Some(End::Low) { 0.5 * w_high } else { f_high });
-                side = Some(End::Low);
-            } else {
-                (high, f_high) = (middle, f);
-                (w_high, w_low) = (f, if side == Some(End::High) { 0.5 * w_low } else { f_low });
-                side = Some(End::High);
-            }
-        }
-        Ok(Some(0.5 * (low + high)))
+        Ok(root)
     }
+}
+
+/// The root of a nearly straight balance that is `f_zero` at nothing, from a guess; `None` where that leads nowhere.
+fn secant_root<E>(
+    f_zero: f64,
+    guess: f64,
+    at: &mut impl FnMut(f64) -> Result<f64, E>,
+) -> Result<Option<f64>, E> {
+    let ((mut x_old, mut f_old), mut x) = ((0.0, f_zero), guess);
+    for _ in 0..SECANT_STEPS {
+        if !(x > 0.0 && x <= MOST_G_L) {
+            return Ok(None);
+        }
+        let f = at(x)?;
+        let next = x - f * (x - x_old) / (f - f_old);
+        // The error left is about the product of the last two.
+        if f == 0.0 || (next - x).abs() <= SECANT_WIDTH * x {
+            return Ok(Some(if next.is_finite() { next } else { x }));
+        }
+        ((x_old, f_old), x) = ((x, f), next);
+    }
+    Ok(None)
+}
+
+/// The root by enclosing it and regula falsi, the weight of a stuck end halved (Illinois rule); `None` when no amount up to
+/// the most turns the sign.
+fn enclosed_root<E>(f_zero: f64, mut at: impl FnMut(f64) -> Result<f64, E>) -> Result<Option<f64>, E> {
+    let ((mut low, mut f_low), mut high) = ((0.0, f_zero), 1e-3);
+    let mut f_high = at(high)?;
+    while f_low.signum() == f_high.signum() {
+        if high > MOST_G_L {
+            return Ok(None);
+        }
+        (low, f_low) = (high, f_high);
+        high *= 4.0;
+        f_high = at(high)?;
+    }
+    let (mut w_low, mut w_high) = (f_low, f_high);
+    let mut stuck = None;
+    for _ in 0..ROOT_STEPS {
+        let middle = (low * w_high - high * w_low) / (w_high - w_low);
+        let f = at(middle)?;
+        if f == 0.0 || high - low <= ROOT_WIDTH * high {
+            return Ok(Some(middle));
+        }
+        if f.signum() == f_low.signum() {
+            (low, f_low) = (middle, f);
+            (w_low, w_high) = (f, if stuck == Some(End::High) { 0.5 * w_high } else { f_high });
+            stuck = Some(End::High);
+        } else {
+            (high, f_high) = (middle, f);
+            (w_high, w_low) = (f, if stuck == Some(End::Low) { 0.5 * w_low } else { f_low });
+            stuck = Some(End::Low);
+        }
+    }
+    Ok(Some(0.5 * (low + high)))
 }
 
 impl Bath {

@@ -1,7 +1,7 @@
 //! The excess over the nearest wall against the dose of one agent, judged at the places known so far.
 
 use super::assess::{Assessor, CONFIDENCE_95, CONFIDENCE_REACH};
-use super::extreme::crossing;
+use super::extreme::{crossing, highest};
 use super::places::{Objective, Place};
 use super::search::{Band, Hold};
 use crate::bath::{Bath, Corrected};
@@ -15,7 +15,10 @@ const HALVINGS: usize = 6;
 const TOUCH: f64 = -1e-9;
 /// Width of a crossing as a share of the largest dose.
 const WIDTH: f64 = 1e-7;
-const DIP_STEPS: usize = 16;
+/// How many times its last fall the excess can fall between two samples.
+const DIP_DEPTH: f64 = 2.0;
+/// Width of samples around a dip, as a share of the largest dose, that are close enough.
+const DIP_WIDTH: f64 = 1e-3;
 /// A place is worth adding when it is worse (log10) by this than those known.
 const WORSE: f64 = 1e-9;
 /// Walls further (log10) from being the nearest than this bring no place of their own.
@@ -197,30 +200,40 @@ impl<'a, 'b> Curve<'a, 'b> {
         self.samples.insert(at, sample);
     }
 
-    /// A narrow band can hide between two samples: every local minimum above zero is followed down.
+    /// A narrow band can hide between two samples: every local minimum above zero that could reach down to it is
+    /// followed.
     pub fn add_dips(&mut self, level: Level) -> Result<(), EquilibriumError> {
-        let dips: Vec<(f64, f64)> = self
-            .samples
-            .windows(3)
-            .filter(|w| {
-                let [a, b, c] = [w[0].excess(level), w[1].excess(level), w[2].excess(level)];
-                b > 0.0 && b <= a && b <= c && w[2].dose - w[0].dose > 1e3 * WIDTH * self.max
-            })
-            .map(|w| (w[0].dose, w[2].dose))
-            .collect();
-        let ratio = 0.5 * (5f64.sqrt() - 1.0);
-        for (mut a, mut b) in dips {
-            for _ in 0..DIP_STEPS {
-                let left = self.take(b - ratio * (b - a))?;
-                let right = self.take(a + ratio * (b - a))?;
-                let lower_is_left = left.excess(level) < right.excess(level);
-                let (ends, lower) =
-                    if lower_is_left { ((a, right.dose), left) } else { ((left.dose, b), right) };
-                if lower.excess(level) <= 0.0 {
-                    self.insert(lower);
-                    break;
+        let could_hold = |w: &&[Sample]| {
+            let [a, b, c] = [w[0].excess(level), w[1].excess(level), w[2].excess(level)];
+            // What it falls by between the samples is of the size of what it fell by before.
+            b > 0.0 && b <= a && b <= c && b <= DIP_DEPTH * (a - b).max(c - b)
+        };
+        let dips: Vec<(f64, f64)> =
+            self.samples.windows(3).filter(could_hold).map(|w| (w[0].dose, w[2].dose)).collect();
+        for (low, high) in dips {
+            if high - low <= DIP_WIDTH * self.max {
+                continue;
+            }
+            let mut found = None;
+            let lowest = highest(low, high, |dose| {
+                // Once a dose holds, the rest is for the crossings.
+                if found.is_some() {
+                    return Ok(f64::NEG_INFINITY);
                 }
-                (a, b) = ends;
+                let sample = self.take(dose)?;
+                let excess = sample.excess(level);
+                if excess <= 0.0 {
+                    found = Some(sample);
+                }
+                Ok(-excess)
+            })?;
+            match found {
+                Some(sample) => self.insert(sample),
+                // Remembered, so that the next round does not go down here again.
+                None => {
+                    let sample = self.take(lowest.0)?;
+                    self.insert(sample);
+                }
             }
         }
         Ok(())
@@ -238,9 +251,14 @@ impl<'a, 'b> Curve<'a, 'b> {
             .collect();
         for [a, b] in crossings {
             let (holds, fails) = if a.1 <= 0.0 { (a, b) } else { (b, a) };
-            let ends = crossing(holds, fails, width, |dose| Ok(self.take(dose)?.excess(level)))?;
-            for dose in ends {
+            let mut taken = Vec::new();
+            let ends = crossing(holds, fails, width, |dose| {
                 let sample = self.take(dose)?;
+                let excess = sample.excess(level);
+                taken.push(sample);
+                Ok(excess)
+            })?;
+            for sample in taken.into_iter().filter(|sample| ends.contains(&sample.dose)) {
                 self.insert(sample);
             }
         }
