@@ -122,7 +122,7 @@ pub struct Content {
 }
 
 /// A complexing agent to add to the bath as it stands.
-#[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
+#[derive(Clone, Debug, Default, PartialEq, Serialize, Deserialize)]
 #[serde(deny_unknown_fields)]
 pub struct AgentDose {
     /// Product id or name.
@@ -130,11 +130,18 @@ pub struct AgentDose {
     /// Grams of the product per litre of bath.
     #[serde(default)]
     pub dose_g_l: f64,
+    /// Smallest dose to consider, grams of the product per litre of bath.
+    #[serde(default, skip_serializing_if = "is_zero")]
+    pub min_g_l: f64,
     /// Largest dose to consider, grams of the product per litre of bath.
     pub max_g_l: f64,
     /// The dose may not be moved by the search.
     #[serde(default, skip_serializing_if = "std::ops::Not::not")]
     pub locked: bool,
+}
+
+fn is_zero(value: &f64) -> bool {
+    *value == 0.0
 }
 
 /// Ceiling and floor of a free metal.

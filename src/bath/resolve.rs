@@ -87,11 +87,16 @@ impl Bath {
             let field = format!("agents[{i}]");
             let found = product(&format!("{field}.product"), &dose.product)?;
             let moles = recipe::moles_per_gram(&field, &found, &library)?;
-            for (name, value) in [("dose_g_l", dose.dose_g_l), ("max_g_l", dose.max_g_l)] {
+            let numbers = [("dose_g_l", dose.dose_g_l), ("min_g_l", dose.min_g_l), ("max_g_l", dose.max_g_l)];
+            for (name, value) in numbers {
                 if !(value.is_finite() && (0.0..=5000.0).contains(&value)) {
                     let fix = "give grams of product per litre, between 0 and 5000";
                     return Err(BathError::Number { field: format!("{field}.{name}"), value, fix });
                 }
+            }
+            if dose.min_g_l > dose.max_g_l {
+                let (field, fix) = (format!("{field}.min_g_l"), "the smallest dose is above the largest");
+                return Err(BathError::Number { field, value: dose.min_g_l, fix });
             }
             agents.push((found, moles));
         }

@@ -129,7 +129,7 @@ fn choose_agent(bath: &Bath, name: Option<&str>) -> Result<(Bath, usize), Comman
     };
     let mut project = bath.project.clone();
     let max_g_l = project.agents.first().map_or(100.0, |agent| agent.max_g_l);
-    let dose = crate::bath::AgentDose { product: product.id.clone(), dose_g_l: 0.0, max_g_l, locked: false };
+    let dose = crate::bath::AgentDose { product: product.id.clone(), max_g_l, ..Default::default() };
     project.agents = vec![dose];
     let other = Bath::resolve(&project)
         .map_err(|source| CommandError::Bath { path: format!("--agent {name}"), source })?;

@@ -223,7 +223,12 @@ impl<'a> Assessor<'a> {
     }
 
     /// A value with its uncertainty at a place.
-    fn read(&mut self, dosed: &Corrected, value: Value, place: Place) -> Result<Reading, EquilibriumError> {
+    pub(super) fn read(
+        &mut self,
+        dosed: &Corrected,
+        value: Value,
+        place: Place,
+    ) -> Result<Reading, EquilibriumError> {
         let sigma = self.places.sigmas(dosed, &place, &[value])?[0];
         let solution = self.places.solve(dosed, &place)?;
         Ok(Reading {

@@ -1,132 +1,71 @@
 //! The excess over the nearest wall against the dose of one agent, judged at the places known so far.
 
-use super::assess::{Assessor, CONFIDENCE_95, CONFIDENCE_REACH};
+use super::assess::Assessor;
 use super::extreme::{crossing, highest};
-use super::places::{Objective, Place};
+use super::judge::{Judge, Level, Sample};
 use super::search::{Band, Hold};
-use crate::bath::{Bath, Corrected};
-use crate::equilibrium::{EquilibriumError, Value};
+use crate::bath::Bath;
+use crate::equilibrium::EquilibriumError;
 
 /// Evenly spaced doses sampled before crossings are refined, and halvings of the first of them towards zero, where free
 /// metal falls by orders of magnitude.
 const SAMPLES: usize = 32;
 const HALVINGS: usize = 6;
-/// A dose holds when its excess (log10) is under this: a rounding error inside the wall, never outside.
-const TOUCH: f64 = -1e-9;
 /// Width of a crossing as a share of the largest dose.
 const WIDTH: f64 = 1e-7;
 /// How many times its last fall the excess can fall between two samples.
 const DIP_DEPTH: f64 = 2.0;
 /// Width of samples around a dip, as a share of the largest dose, that are close enough.
 const DIP_WIDTH: f64 = 1e-3;
-/// A place is worth adding when it is worse (log10) by this than those known.
-const WORSE: f64 = 1e-9;
-/// Walls further (log10) from being the nearest than this bring no place of their own.
-const BEHIND: f64 = 1.0;
 
-/// Plain numbers, or 95 % confidence.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub(super) enum Level {
-    Plain,
-    Sure,
-}
-
-/// A dose with its excess (log10) over the nearest wall.
+/// A judged dose of the agent.
 #[derive(Clone, Debug)]
-pub(super) struct Sample {
-    pub dose: f64,
-    pub plain: f64,
-    /// Only worked out where the plain numbers hold; elsewhere the plain excess.
-    pub sure: f64,
-    dosed: Corrected,
-    /// Places judged so far.
-    judged: usize,
+pub(super) struct Dose {
+    pub g_l: f64,
+    pub sample: Sample,
 }
 
-impl Sample {
-    fn excess(&self, level: Level) -> f64 {
-        (if level == Level::Plain { self.plain } else { self.sure }) - TOUCH
-    }
-
-    pub fn hold(&self) -> Hold {
-        match (self.excess(Level::Plain) <= 0.0, self.excess(Level::Sure) <= 0.0) {
-            (true, true) => Hold::Sure,
-            (true, false) => Hold::Plain,
-            _ => Hold::Not,
-        }
-    }
-}
-
-/// Samples in rising order of dose, and the places at which they are judged.
+/// Judged doses of one agent in rising order.
 pub(super) struct Curve<'a, 'b> {
-    bath: &'a Bath,
-    assessor: &'b mut Assessor<'a>,
-    objectives: Vec<Objective>,
+    judge: Judge<'a, 'b>,
     doses: Vec<f64>,
     agent: usize,
+    min: f64,
     max: f64,
-    places: Vec<Place>,
-    samples: Vec<Sample>,
-    /// Doses whose worst places are known.
-    learned: Vec<f64>,
-    scores: Vec<f64>,
+    samples: Vec<Dose>,
 }
 
 impl<'a, 'b> Curve<'a, 'b> {
     pub fn new(bath: &'a Bath, agent: usize, assessor: &'b mut Assessor<'a>) -> Self {
         Self {
-            objectives: assessor.walls.iter().map(|wall| Objective::Wall(*wall)).collect(),
-            places: vec![assessor.places.set()],
+            judge: Judge::new(bath, assessor, 2.0 * WIDTH),
             doses: bath.doses(),
+            min: bath.project.agents[agent].min_g_l,
             max: bath.agents[agent].max_g_l,
             samples: Vec::new(),
-            learned: Vec::new(),
-            scores: Vec::new(),
-            bath,
-            assessor,
             agent,
         }
     }
 
-    pub fn samples(&self) -> impl Iterator<Item = &Sample> {
+    pub fn samples(&self) -> impl Iterator<Item = &Dose> {
         self.samples.iter()
     }
 
     /// Adds the worst places of a dose; whether any was worse than those known.
     pub fn learn(&mut self, dose: f64) -> Result<bool, EquilibriumError> {
-        let known = |learned: &f64| (learned - dose).abs() <= 2.0 * WIDTH * self.max;
-        if self.learned.iter().any(known) {
-            return Ok(false);
-        }
-        self.learned.push(dose);
-        let sample = self.take(dose)?;
-        let worst = self.assessor.worst(&sample.dosed)?;
-        let nearest = worst.iter().map(|wall| wall.excess_95).fold(f64::NEG_INFINITY, f64::max);
-        let mut gained = false;
-        for wall in worst {
-            let is_new = wall.excess > sample.plain + WORSE || wall.excess_95 > sample.sure + WORSE;
-            gained |= is_new;
-            if is_new || (self.learned.len() <= 2 && wall.excess_95 > nearest - BEHIND) {
-                for place in [wall.plain, wall.sure] {
-                    if !self.places.contains(&place) {
-                        self.places.push(place);
-                        self.assessor.places.seat(place);
-                    }
-                }
-            }
-        }
-        Ok(gained)
+        self.doses[self.agent] = dose;
+        self.judge.learn(&self.doses)
     }
 
-    /// Samples all doses up to the largest.
-    pub fn sample(&mut self, max: f64) -> Result<(), EquilibriumError> {
-        let step = max / SAMPLES as f64;
+    /// Samples all doses from the smallest to the largest.
+    pub fn sample(&mut self) -> Result<(), EquilibriumError> {
+        let step = (self.max - self.min) / SAMPLES as f64;
         let small = (1..=HALVINGS).rev().map(|halvings| step * 0.5f64.powi(halvings as i32));
         let mut doses: Vec<f64> =
             std::iter::once(0.0).chain(small).chain((1..=SAMPLES).map(|i| step * i as f64)).collect();
         doses.dedup();
         for dose in doses {
-            let sample = self.take(dose)?;
+            let sample = self.take(self.min + dose)?;
             self.samples.push(sample);
         }
         Ok(())
@@ -144,57 +83,22 @@ impl<'a, 'b> Curve<'a, 'b> {
         }
         if gained {
             let mut samples = std::mem::take(&mut self.samples);
-            for sample in &mut samples {
-                self.judge(sample)?;
+            for dose in &mut samples {
+                self.judge.judge(&mut dose.sample)?;
             }
             self.samples = samples;
         }
         Ok(gained)
     }
 
-    fn take(&mut self, dose: f64) -> Result<Sample, EquilibriumError> {
+    fn take(&mut self, dose: f64) -> Result<Dose, EquilibriumError> {
         self.doses[self.agent] = dose;
-        let dosed = self.assessor.places.dose(&self.doses)?;
-        let mut sample = Sample { dose, plain: f64::NEG_INFINITY, sure: f64::NEG_INFINITY, dosed, judged: 0 };
-        self.judge(&mut sample)?;
-        Ok(sample)
+        Ok(Dose { g_l: dose, sample: self.judge.take(&self.doses)? })
     }
 
-    /// Judges a sample at the places that were added since.
-    fn judge(&mut self, sample: &mut Sample) -> Result<(), EquilibriumError> {
-        let walls = self.objectives.len();
-        let first = sample.judged;
-        self.scores.clear();
-        for place in &self.places[first..] {
-            self.assessor.places.score(&sample.dosed, place, &self.objectives, &mut self.scores)?;
-        }
-        let highest = self.scores.iter().copied().fold(f64::NEG_INFINITY, f64::max);
-        sample.plain = sample.plain.max(highest);
-        sample.judged = self.places.len();
-        if sample.plain - TOUCH > 0.0 {
-            sample.sure = sample.plain;
-            return Ok(());
-        }
-        for (scores, place) in self.scores.chunks_exact(walls).zip(&self.places[first..]) {
-            let near = |score: &f64| *score > sample.plain - CONFIDENCE_REACH && score.is_finite();
-            let near: Vec<usize> = (0..walls).filter(|wall| near(&scores[*wall])).collect();
-            if near.is_empty() {
-                continue;
-            }
-            let values: Vec<Value> =
-                near.iter().map(|wall| self.bath.limited_value(self.assessor.walls[*wall])).collect();
-            let sigmas = self.assessor.places.sigmas(&sample.dosed, place, &values)?;
-            for (wall, sigma) in near.into_iter().zip(sigmas) {
-                sample.sure = sample.sure.max(scores[wall] + CONFIDENCE_95 * sigma);
-            }
-        }
-        sample.sure = sample.sure.max(sample.plain);
-        Ok(())
-    }
-
-    fn insert(&mut self, sample: Sample) {
-        let at = self.samples.partition_point(|known| known.dose < sample.dose);
-        if self.samples.get(at).is_some_and(|known| known.dose == sample.dose) {
+    fn insert(&mut self, sample: Dose) {
+        let at = self.samples.partition_point(|known| known.g_l < sample.g_l);
+        if self.samples.get(at).is_some_and(|known| known.g_l == sample.g_l) {
             return;
         }
         self.samples.insert(at, sample);
@@ -203,13 +107,13 @@ impl<'a, 'b> Curve<'a, 'b> {
     /// A narrow band can hide between two samples: every local minimum above zero that could reach down to it is
     /// followed.
     pub fn add_dips(&mut self, level: Level) -> Result<(), EquilibriumError> {
-        let could_hold = |w: &&[Sample]| {
-            let [a, b, c] = [w[0].excess(level), w[1].excess(level), w[2].excess(level)];
+        let could_hold = |w: &&[Dose]| {
+            let [a, b, c] = [w[0].sample.excess(level), w[1].sample.excess(level), w[2].sample.excess(level)];
             // What it falls by between the samples is of the size of what it fell by before.
             b > 0.0 && b <= a && b <= c && b <= DIP_DEPTH * (a - b).max(c - b)
         };
         let dips: Vec<(f64, f64)> =
-            self.samples.windows(3).filter(could_hold).map(|w| (w[0].dose, w[2].dose)).collect();
+            self.samples.windows(3).filter(could_hold).map(|w| (w[0].g_l, w[2].g_l)).collect();
         for (low, high) in dips {
             if high - low <= DIP_WIDTH * self.max {
                 continue;
@@ -221,7 +125,7 @@ impl<'a, 'b> Curve<'a, 'b> {
                     return Ok(f64::NEG_INFINITY);
                 }
                 let sample = self.take(dose)?;
-                let excess = sample.excess(level);
+                let excess = sample.sample.excess(level);
                 if excess <= 0.0 {
                     found = Some(sample);
                 }
@@ -245,20 +149,20 @@ impl<'a, 'b> Curve<'a, 'b> {
         let crossings: Vec<[(f64, f64); 2]> = self
             .samples
             .windows(2)
-            .filter(|w| (w[0].excess(level) <= 0.0) != (w[1].excess(level) <= 0.0))
-            .filter(|w| w[1].dose - w[0].dose > width)
-            .map(|w| [(w[0].dose, w[0].excess(level)), (w[1].dose, w[1].excess(level))])
+            .filter(|w| (w[0].sample.excess(level) <= 0.0) != (w[1].sample.excess(level) <= 0.0))
+            .filter(|w| w[1].g_l - w[0].g_l > width)
+            .map(|w| [(w[0].g_l, w[0].sample.excess(level)), (w[1].g_l, w[1].sample.excess(level))])
             .collect();
         for [a, b] in crossings {
             let (holds, fails) = if a.1 <= 0.0 { (a, b) } else { (b, a) };
             let mut taken = Vec::new();
             let ends = crossing(holds, fails, width, |dose| {
                 let sample = self.take(dose)?;
-                let excess = sample.excess(level);
+                let excess = sample.sample.excess(level);
                 taken.push(sample);
                 Ok(excess)
             })?;
-            for sample in taken.into_iter().filter(|sample| ends.contains(&sample.dose)) {
+            for sample in taken.into_iter().filter(|sample| ends.contains(&sample.g_l)) {
                 self.insert(sample);
             }
         }
@@ -267,10 +171,10 @@ impl<'a, 'b> Curve<'a, 'b> {
 
     pub fn bands(&self) -> Vec<Band> {
         let mut bands: Vec<Band> = Vec::new();
-        for sample in &self.samples {
+        for Dose { g_l, sample } in &self.samples {
             match bands.last_mut() {
-                Some(band) if band.hold == sample.hold() => band.to = sample.dose,
-                _ => bands.push(Band { from: sample.dose, to: sample.dose, hold: sample.hold() }),
+                Some(band) if band.hold == sample.hold() => band.to = *g_l,
+                _ => bands.push(Band { from: *g_l, to: *g_l, hold: sample.hold() }),
             }
         }
         bands

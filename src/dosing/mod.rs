@@ -3,8 +3,10 @@
 //! This floor asks the bath for equilibria and knows neither sheets nor windows.
 
 mod assess;
+mod blend;
 mod curve;
 mod extreme;
+mod judge;
 mod ledger;
 mod measure;
 mod places;
@@ -14,6 +16,7 @@ mod search;
 mod verdict;
 
 pub use assess::{Assessment, Assessor, CONFIDENCE_95, MetalReading, Reading, WallReading};
+pub use blend::{Aim, Binding, Blend, BlendError, MOST_AGENTS, Worsening, blend};
 pub use ledger::{Holder, LedgerEntry, ledger};
 pub use measure::{Direction, Measured, ROUNDING_FLAG, measure};
 pub use plan::{Addition, Plan, Step, plan};

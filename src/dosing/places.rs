@@ -6,7 +6,7 @@
 
 use super::extreme::highest;
 use crate::bath::{Bath, Corrected, Corrector, Points, Position, Range, Solids, Wall};
-use crate::equilibrium::{Constants, Equilibrium, EquilibriumError, LN_10, Value};
+use crate::equilibrium::{Constants, Equilibrium, EquilibriumError, Gradient, LN_10, Value};
 
 /// pH values scanned over the range before an extreme is refined.
 const PH_SAMPLES: usize = 7;
@@ -142,12 +142,33 @@ impl<'a> Places<'a> {
         place: &Place,
         values: &[Value],
     ) -> Result<Vec<f64>, EquilibriumError> {
+        let gradients = self.gradients(dosed, place, values)?;
+        Ok(gradients.iter().map(|gradient| gradient.sigma_log10(&self.bath.system)).collect())
+    }
+
+    /// Gradients of values at a place.
+    ///
+    /// # Errors
+    /// [`EquilibriumError`] for an ill-posed bath.
+    pub fn gradients(
+        &mut self,
+        dosed: &Corrected,
+        place: &Place,
+        values: &[Value],
+    ) -> Result<Vec<Gradient>, EquilibriumError> {
         self.solve(dosed, place)?;
         let level = self.level(place.temperature_c);
         let Self { points, levels, totals, solution, .. } = self;
         points.sensitivities(&levels[level].1, totals, place.ph, solution, |answers| {
-            answers.sigma_log10(values)
+            values.iter().map(|value| answers.gradient(*value)).collect()
         })
+    }
+
+    /// Totals at a place, mol/L.
+    pub fn totals(&self, dosed: &Corrected, place: &Place) -> Vec<f64> {
+        let mut totals = dosed.totals.clone();
+        self.bath.drifted(&place.position, dosed.dilution, &mut totals);
+        totals
     }
 
     /// Scores at a place, appended to `scores`.

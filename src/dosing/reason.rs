@@ -133,9 +133,8 @@ fn other_agents(bath: &Bath, agent: usize) -> Result<Vec<Change>, EquilibriumErr
         let mut project = bath.project.clone();
         project.agents[agent] = AgentDose {
             product: product.id.clone(),
-            dose_g_l: 0.0,
             max_g_l: bath.agents[agent].max_g_l,
-            locked: false,
+            ..AgentDose::default()
         };
         let Ok(other) = Bath::resolve(&project) else { continue };
         let Ok(mut assessor) = Assessor::new(&other) else { continue };

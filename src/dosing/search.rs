@@ -5,7 +5,8 @@
 //! few doses to begin with, then those of every band end that these suggest, until no band end has a worse place.
 
 use super::assess::{Assessment, Assessor};
-use super::curve::{Curve, Level};
+use super::curve::Curve;
+use super::judge::Level;
 use crate::bath::Bath;
 use crate::equilibrium::EquilibriumError;
 
@@ -62,7 +63,7 @@ const SEEDS: [f64; 2] = [0.1, 1.0];
 /// Rounds of the exchange; each adds a place, and a window has few that matter.
 const ROUNDS: usize = 12;
 
-/// Searches the doses of one agent from zero to its cap, the other doses as they are.
+/// Searches the doses of one agent between its bounds, the other doses as they are.
 ///
 /// # Errors
 /// [`EquilibriumError`] for an ill-posed bath.
@@ -81,7 +82,7 @@ pub(super) fn search_with<'a>(
     for share in SEEDS {
         curve.learn(share * max)?;
     }
-    curve.sample(max)?;
+    curve.sample()?;
     for _ in 0..ROUNDS {
         for level in [Level::Plain, Level::Sure] {
             curve.add_dips(level)?;
@@ -92,13 +93,13 @@ pub(super) fn search_with<'a>(
         }
     }
     let bands = curve.bands();
-    let smallest = |hold: Hold| curve.samples().find(|sample| sample.hold() >= hold).map(|s| s.dose);
+    let smallest = |hold: Hold| curve.samples().find(|dose| dose.sample.hold() >= hold).map(|dose| dose.g_l);
     let plain_g_l = smallest(Hold::Plain);
     let sure_g_l = smallest(Hold::Sure);
     let best = curve
         .samples()
-        .min_by(|a, b| a.plain.total_cmp(&b.plain))
-        .map_or((0.0, f64::INFINITY), |s| (s.dose, s.plain));
+        .min_by(|a, b| a.sample.plain.total_cmp(&b.sample.plain))
+        .map_or((0.0, f64::INFINITY), |dose| (dose.g_l, dose.sample.plain));
     let found = match sure_g_l.or(plain_g_l) {
         Some(dose_g_l) => {
             let mut doses = bath.doses();

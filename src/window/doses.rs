@@ -219,7 +219,7 @@ fn add_agent(app: &mut App, ui: &mut Ui) {
             product,
             dose_g_l: 0.0,
             max_g_l: DEFAULT_MAX_G_L,
-            locked: false,
+            ..AgentDose::default()
         });
         app.document.settle(&format!("add {name}"));
     }

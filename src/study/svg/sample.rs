@@ -23,7 +23,7 @@ pub fn project(contents: &[(&str, &str)], agents: &[(&str, f64, f64)]) -> Projec
             product: product.to_owned(),
             dose_g_l,
             max_g_l,
-            locked: false,
+            ..AgentDose::default()
         })
         .collect();
     project
