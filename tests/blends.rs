@@ -47,10 +47,8 @@ impl<'a> Scan<'a> {
         let places = (0..self.levels.len()).flat_map(|level| (0..self.ph.len()).map(move |ph| (level, ph)));
         for (level, ph) in std::iter::once((last_level, last_ph)).chain(places) {
             let (constants, solver) = &mut self.levels[level];
-            let s = self
-                .bath
-                .solve_totals(solver, constants, &totals, Some(self.ph[ph]), Solids::Walls)
-                .unwrap();
+            let s =
+                self.bath.solve_totals(solver, constants, &totals, Some(self.ph[ph]), Solids::Walls).unwrap();
             let over = self.bath.limits.iter().any(|limit| {
                 let log_free = s.ln_c[limit.component] / LN_10;
                 limit.ceiling.is_some_and(|ceiling| log_free > ceiling.log10() + slack)
@@ -187,7 +185,8 @@ fn a_worsening_costs_what_the_certificate_says() {
     let binding = &base.binding[0];
     assert!(binding.per_decade > 0.0);
     let (what, change): (&str, f64) = ("0.1 pH lower", -0.1);
-    let said = binding.worsenings.iter().find(|worsening| worsening.what == what).expect("acid is the enemy").cost;
+    let said =
+        binding.worsenings.iter().find(|worsening| worsening.what == what).expect("acid is the enemy").cost;
     let mut project = bath.project.clone();
     let range = bath.ph().unwrap();
     project.tank.ph = Range::new(range.low + change, range.set, range.high).into();

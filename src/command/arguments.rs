@@ -32,6 +32,9 @@ pub enum Command {
         /// Product id, name or agent; the bath's first agent without it.
         #[arg(long)]
         agent: Option<String>,
+        /// Blend all agents that are not locked, at least price or least weight.
+        #[arg(long, value_enum, conflicts_with = "agent", num_args = 0..=1, default_missing_value = "cheapest")]
+        blend: Option<LeastIn>,
         /// One JSON object instead of tables.
         #[arg(long)]
         json: bool,
@@ -70,6 +73,15 @@ pub enum Command {
         #[arg(long, default_value_t = 400, value_parser = clap::value_parser!(u32).range(2..=20_000))]
         points: u32,
     },
+}
+
+/// What a blend is to be least in.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
+pub enum LeastIn {
+    /// Price of the products.
+    Cheapest,
+    /// Weight of the products.
+    Lightest,
 }
 
 /// What runs along the bottom of a diagram.

@@ -261,11 +261,15 @@ pub fn limits_table(bath: &Bath, before: &Assessment, after: &Assessment) -> Str
 
 /// The additions for the tank.
 pub fn additions(decision: &Decision) -> String {
-    let plan = &decision.plan;
+    additions_text(&decision.bath, &decision.plan)
+}
+
+/// The additions of a plan.
+pub fn additions_text(bath: &Bath, plan: &Plan) -> String {
     if let Some(refused) = &plan.refused {
         return format!("\nRefused: {refused}\n");
     }
-    let volume = decision.bath.project.tank.volume_l;
+    let volume = bath.project.tank.volume_l;
     let mut text = format!("\nAdditions for {} L\n", crate::quantity::grouped(volume, 0));
     let mut table = Table::new(&["product", "measure out", "exact", "g/L"]);
     for addition in &plan.additions {

@@ -3,6 +3,7 @@
 //! Exit codes: 0 done, 1 no dose holds, 2 bad input.
 
 mod arguments;
+mod blend;
 mod diagram;
 mod dose;
 mod report;
@@ -82,7 +83,14 @@ pub enum CommandError {
 pub fn run(command: &Command, out: &mut dyn Write) -> Result<Outcome, CommandError> {
     match command {
         Command::Solve { file, json } => solve::run(&open(file)?, *json, out),
-        Command::Dose { file, agent, json } => dose::run(&open(file)?, agent.as_deref(), *json, out),
+        Command::Dose { file, blend: Some(least), json, .. } => {
+            let aim = match least {
+                arguments::LeastIn::Cheapest => crate::dosing::Aim::Cheapest,
+                arguments::LeastIn::Lightest => crate::dosing::Aim::Lightest,
+            };
+            blend::run(&open(file)?, aim, *json, out)
+        }
+        Command::Dose { file, agent, json, .. } => dose::run(&open(file)?, agent.as_deref(), *json, out),
         Command::Sheet { file, out: path, agent, paper } => {
             sheet::run(&open(file)?, agent.as_deref(), *paper, path, file, out)
         }

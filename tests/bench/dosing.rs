@@ -1,8 +1,8 @@
 //! Times of the dose decision on the demo baths: `cargo bench --bench dosing`. The fastest of several runs each, because
 //! what others do on the machine is no property of the program.
 
-use bathwright::bath::{Bath, DEMOS, HardnessRange, LoadRange, Span};
-use bathwright::dosing::{Assessor, search};
+use bathwright::bath::{AgentDose, Bath, DEMOS, HardnessRange, LoadRange, Span};
+use bathwright::dosing::{Aim, Assessor, blend, search};
 use bathwright::quantity::{Amount, Unit};
 use std::time::Instant;
 
@@ -70,5 +70,29 @@ fn main() {
             demo.file,
             bath.system.species.len(),
         );
+    }
+    blends();
+}
+
+/// Three agents on the cleaner and the derusting bath, with the demo's own window.
+fn blends() {
+    for (file, agents) in [
+        ("hard_water_cleaner.ron", [("na-gluconate", 40.0), ("nta-na3-40", 20.0), ("edta-na4-39", 10.0)]),
+        ("derusting.ron", [("edta-na4-39", 80.0), ("hedta-na3-41", 80.0), ("citric-mono", 40.0)]),
+        ("copper_strike.ron", [("hedp-60", 80.0), ("citric-mono", 40.0), ("edta-na4-39", 40.0)]),
+    ] {
+        let demo = bathwright::bath::Demo::named(file).expect("a demo bath");
+        let mut project = demo.project().expect("demo baths read");
+        let dose = |(product, max_g_l): (&str, f64)| AgentDose {
+            product: product.to_owned(),
+            max_g_l,
+            ..AgentDose::default()
+        };
+        project.agents = agents.map(dose).into();
+        let bath = Bath::resolve(&project).expect("demo baths resolve");
+        let time = fastest(|| {
+            blend(&bath, &[0, 1, 2], Aim::Cheapest).expect("demo baths solve");
+        });
+        println!("blend of three, {file:<24} {time:>8.1}");
     }
 }
