@@ -5,8 +5,8 @@ use super::table::Table;
 use super::{CommandError, Outcome, choose_agent, print};
 use crate::bath::{Bath, Wall};
 use crate::dosing::{
-    Assessment, Change, Hold, Plan, Reason, Search, Verdict, place_words, plan, search, share_of_limit,
-    verdict, wall_name, why_none,
+    Assessment, Change, Hold, Plan, Reason, Sampled, Search, Verdict, place_words, plan, sample, search,
+    share_of_limit, verdict, wall_name, why_none,
 };
 use crate::quantity::{fixed, p_value, percent, significant};
 use serde_json::{Value, json};
@@ -26,7 +26,13 @@ pub struct Decision {
     pub verdict: Verdict,
     /// Why none holds.
     pub reason: Option<Reason>,
+    /// The rounded dose under draws of all constants.
+    pub sampled: Option<Sampled>,
 }
+
+/// Draws of all constants, and their seed: the same answer every time.
+const DRAWS: usize = 10_000;
+const SEED: u64 = 1;
 
 /// Searches, rounds, plans and judges.
 pub fn decide(bath: &Bath, name: Option<&str>) -> Result<Decision, CommandError> {
@@ -43,7 +49,8 @@ pub fn decide(bath: &Bath, name: Option<&str>) -> Result<Decision, CommandError>
     let plan = plan(&bath, &doses)?;
     bath.project.agents[agent].dose_g_l = plan.rounded_doses[agent];
     let verdict = verdict(&bath, &plan.after, Some(&search));
-    Ok(Decision { bath, agent, search, plan, verdict, reason })
+    let sampled = sample(&bath, &plan.rounded_doses, DRAWS, SEED)?;
+    Ok(Decision { bath, agent, search, plan, verdict, reason, sampled })
 }
 
 pub fn run(
@@ -104,7 +111,7 @@ fn change_json(change: &Change) -> Value {
 }
 
 fn json_text(decision: &Decision) -> Result<Value, CommandError> {
-    let Decision { bath, agent, search, plan, verdict, reason } = decision;
+    let Decision { bath, agent, search, plan, verdict, reason, sampled } = decision;
     let solution = at_set_point(bath, &plan.rounded_doses)?;
     let mut object = json_object(bath, &solution, &plan.rounded_doses);
     let product = &bath.agents[*agent].product;
@@ -150,6 +157,16 @@ fn json_text(decision: &Decision) -> Result<Value, CommandError> {
     object.insert("worst_cases_before".into(), Value::Array(wall_json(bath, &plan.before)));
     object.insert("verdict".into(), json!({ "state": verdict.state.word(), "sentence": verdict.sentence }));
     object.insert(
+        "sampled".into(),
+        json!(sampled.as_ref().map(|sampled| json!({
+            "draws": sampled.draws,
+            "holding": sampled.holding,
+            "wall": wall_name(bath, sampled.wall),
+            "share_of_limit_median": 10f64.powf(sampled.median),
+            "share_of_limit_95": 10f64.powf(sampled.excess_95),
+        }))),
+    );
+    object.insert(
         "reason".into(),
         match reason {
             Some(reason) => json!({
@@ -167,7 +184,7 @@ fn json_text(decision: &Decision) -> Result<Value, CommandError> {
 
 /// The decision in words and tables.
 pub fn text(decision: &Decision) -> Result<String, CommandError> {
-    let Decision { bath, agent, search, plan, verdict, reason } = decision;
+    let Decision { bath, agent, search, plan, verdict, reason, sampled } = decision;
     let product = &bath.agents[*agent].product;
     let solution = at_set_point(bath, &plan.rounded_doses)?;
     let mut text = heading(bath, &solution, &plan.rounded_doses);
@@ -198,6 +215,15 @@ pub fn text(decision: &Decision) -> Result<String, CommandError> {
         }
     }
     text += &format!("\n{}. {}\n", verdict.state.word(), verdict.sentence);
+    if let Some(sampled) = sampled {
+        text += &format!(
+            "Of {} draws of all constants {} hold at the worst place; 19 of 20 stay under {} of {}.\n",
+            crate::quantity::grouped(sampled.draws as f64, 0),
+            percent(sampled.holding as f64 / sampled.draws as f64),
+            share_of_limit(sampled.excess_95),
+            wall_name(bath, sampled.wall),
+        );
+    }
     Ok(text + &super::solve::footing(bath, &solution))
 }
 

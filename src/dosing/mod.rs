@@ -12,6 +12,7 @@ mod measure;
 mod places;
 mod plan;
 mod reason;
+mod sampling;
 mod search;
 mod verdict;
 
@@ -21,5 +22,6 @@ pub use ledger::{Holder, LedgerEntry, ledger};
 pub use measure::{Direction, Measured, ROUNDING_FLAG, measure};
 pub use plan::{Addition, Plan, Step, plan};
 pub use reason::{Change, Reason, why_none};
+pub use sampling::{Sampled, sample};
 pub use search::{Band, Found, Hold, Search, search};
 pub use verdict::{State, Verdict, place as place_words, share as share_of_limit, verdict, wall_name};

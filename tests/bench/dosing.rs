@@ -2,7 +2,7 @@
 //! what others do on the machine is no property of the program.
 
 use bathwright::bath::{AgentDose, Bath, DEMOS, HardnessRange, LoadRange, Span};
-use bathwright::dosing::{Aim, Assessor, blend, search};
+use bathwright::dosing::{Aim, Assessor, blend, sample, search};
 use bathwright::quantity::{Amount, Unit};
 use std::time::Instant;
 
@@ -42,8 +42,8 @@ fn drifting(bath: &Bath) -> Option<Bath> {
 fn main() {
     println!("milliseconds");
     println!(
-        "{:<24} {:>8} {:>8} {:>8} {:>8}   {:>8} {:>8}",
-        "demo bath", "species", "resolve", "assess", "search", "assess 5", "search 5"
+        "{:<24} {:>8} {:>8} {:>8} {:>8}   {:>8} {:>8}   {:>8}",
+        "demo bath", "species", "resolve", "assess", "search", "assess 5", "search 5", "10,000 draws"
     );
     for demo in DEMOS {
         let project = demo.project().expect("demo baths read");
@@ -65,8 +65,11 @@ fn main() {
             Bath::resolve(&project).expect("demo baths resolve");
         });
         let ((assess, search), (assess_5, search_5)) = (of(&bath), of(&drifting));
+        let draws = fastest(|| {
+            sample(&bath, &doses, 10_000, 1).expect("demo baths solve");
+        });
         println!(
-            "{:<24} {:>8} {resolve:>8.2} {assess:>8.2} {search:>8.2}   {assess_5:>8.2} {search_5:>8.2}",
+            "{:<24} {:>8} {resolve:>8.2} {assess:>8.2} {search:>8.2}   {assess_5:>8.2} {search_5:>8.2}   {draws:>8.0}",
             demo.file,
             bath.system.species.len(),
         );
