@@ -155,6 +155,31 @@ fn diagrams_are_written_as_svg_and_csv() {
     assert_eq!(std::fs::read_to_string(&csv).unwrap().trim().lines().count(), 51);
 }
 
+#[test]
+fn maps_are_written_as_svg_and_csv() {
+    let folder = tempfile::tempdir().unwrap();
+    let (svg, csv) = (folder.path().join("m.svg"), folder.path().join("m.csv"));
+    let output = run!("map", &demo("copper_strike.ron"), "--out", &svg);
+    assert_eq!(output.status.code(), Some(0), "{}", text(&output.stderr));
+    let picture = std::fs::read_to_string(&svg).unwrap();
+    assert!(picture.contains("ceiling") && picture.contains("pCu"), "the ceiling is drawn and named");
+    let output = run!("map", &demo("copper_strike.ron"), "--out", &csv, "--of", "limit");
+    assert_eq!(output.status.code(), Some(0), "{}", text(&output.stderr));
+    assert_eq!(std::fs::read_to_string(&csv).unwrap().trim().lines().count(), 1 + 200 * 150);
+    assert_eq!(run!("map", &demo("copper_strike.ron"), "--out", "map.doc").status.code(), Some(2));
+}
+
+#[test]
+fn a_blend_is_found_and_says_what_binds_it() {
+    let output = run!("dose", &demo("hard_water_cleaner.ron"), "--blend", "lightest", "--json");
+    assert_eq!(output.status.code(), Some(0), "{}", text(&output.stderr));
+    let found: serde_json::Value = serde_json::from_str(&text(&output.stdout)).unwrap();
+    assert_eq!(found["holds"], true);
+    assert!(!found["binding"].as_array().unwrap().is_empty());
+    let words = text(&run!("dose", &demo("hard_water_cleaner.ron"), "--blend").stdout);
+    assert!(words.contains("cheapest blend") && words.contains("What keeps it from being less"), "{words}");
+}
+
 /// Replaces a piece of the copper strike and expects exit 2 with a message that names the field and the fix.
 fn refused(from: &str, to: &str, needles: &[&str]) {
     let folder = tempfile::tempdir().unwrap();

@@ -53,6 +53,21 @@ pub enum Command {
         #[arg(long, value_enum, default_value_t = PaperSize::A4)]
         paper: PaperSize,
     },
+    /// Write a map of free metal over pH and dose.
+    Map {
+        /// Project file.
+        file: PathBuf,
+        /// Where to write it: .svg or .csv.
+        #[arg(long)]
+        out: PathBuf,
+        /// Metal whose free level is mapped, or "limit" for the share of the nearest limit; the first limited metal
+        /// without it.
+        #[arg(long)]
+        of: Option<String>,
+        /// Agent whose dose runs upwards; the bath's first agent without it.
+        #[arg(long)]
+        agent: Option<String>,
+    },
     /// Write a distribution diagram.
     Diagram {
         /// Project file.

@@ -47,18 +47,21 @@ pub fn run(bath: &Bath, wish: &Wish, path: &Path, out: &mut dyn Write) -> Result
     Ok(Outcome::Done)
 }
 
-/// The operating range with room on both sides; the whole scale when the pH is not held.
 fn ph_axis(bath: &Bath) -> Axis {
+    let (from, to) = ph_ends(bath);
+    Axis::Ph { from, to }
+}
+
+/// The operating range with room on both sides; the whole scale when the pH is not held.
+pub fn ph_ends(bath: &Bath) -> (f64, f64) {
     match bath.ph() {
-        Some(range) => Axis::Ph {
-            from: (range.low - PH_ROOM).floor().max(-1.0),
-            to: (range.high + PH_ROOM).ceil().min(15.0),
-        },
-        None => Axis::Ph { from: 0.0, to: 14.0 },
+        Some(range) => ((range.low - PH_ROOM).floor().max(-1.0), (range.high + PH_ROOM).ceil().min(15.0)),
+        None => (0.0, 14.0),
     }
 }
 
-fn basis(bath: &Bath, of: Option<&str>) -> Result<Basis, CommandError> {
+/// The named component of the bath, else its first limited metal.
+pub fn basis(bath: &Bath, of: Option<&str>) -> Result<Basis, CommandError> {
     let Some(name) = of else {
         let first = bath.limits.first().map(|limit| limit.component).or_else(|| bath.metals().next());
         return first

@@ -6,6 +6,7 @@ mod arguments;
 mod blend;
 mod diagram;
 mod dose;
+mod map;
 mod report;
 mod sheet;
 mod solve;
@@ -93,6 +94,9 @@ pub fn run(command: &Command, out: &mut dyn Write) -> Result<Outcome, CommandErr
         Command::Dose { file, agent, json, .. } => dose::run(&open(file)?, agent.as_deref(), *json, out),
         Command::Sheet { file, out: path, agent, paper } => {
             sheet::run(&open(file)?, agent.as_deref(), *paper, path, file, out)
+        }
+        Command::Map { file, out: path, of, agent } => {
+            map::run(&open(file)?, of.as_deref(), agent.as_deref(), path, out)
         }
         Command::Diagram { file, out: path, of, against, agent, points } => {
             let wish = diagram::Wish {

@@ -1,19 +1,32 @@
-//! Writes a distribution diagram as a table for a spreadsheet: one row per point of the axis.
+//! Writes a distribution diagram or a map as a table for a spreadsheet: one row per point of the axis.
 //!
 //! Shares are fractions of the component's total, pM is −log10 of the free metal in mol/L. A cell stays empty where
 //! there is no answer. Tokens can be typed by a user, so a heading that a spreadsheet would run as a formula is given
 //! a leading apostrophe; numbers are left alone.
 
-use super::{Axis, Diagram};
+use super::{Axis, Diagram, Map, MapOf};
 use crate::bath::Bath;
 use crate::quantity::spreadsheet_text;
 
 /// Figures that a share or pM is written with.
 const FIGURES: usize = 6;
 
+/// The map as CSV text: pH, dose and pM, or the excess over the nearest limit in decades, one row for each point.
+pub fn map_to_csv(bath: &Bath, map: &Map) -> String {
+    let (name, sign) = match map.of {
+        MapOf::Free(component) => (format!("pM {}", bath.system.components[component]), -1.0),
+        MapOf::Excess => ("log10_share_of_limit".to_owned(), 1.0),
+    };
+    let head = ["pH".to_owned(), "dose_g_per_L".to_owned(), spreadsheet_text(&name)];
+    let points = (0..map.dose.len()).flat_map(|row| (0..map.ph.len()).map(move |column| (column, row)));
+    let rows = points.map(|(column, row)| {
+        vec![number(map.ph[column]), number(map.dose[row]), number(sign * map.at(column, row))]
+    });
+    table(std::iter::once(head.into()).chain(rows))
+}
+
 /// The diagram as CSV text (UTF-8, no byte order mark, comma separated, decimal point).
 pub fn to_csv(bath: &Bath, diagram: &Diagram) -> String {
-    let mut writer = ::csv::WriterBuilder::new().flexible(true).from_writer(Vec::new());
     let x = match diagram.axis {
         Axis::Ph { .. } => "pH",
         Axis::Dose { .. } => "dose_g_per_L",
@@ -23,16 +36,21 @@ pub fn to_csv(bath: &Bath, diagram: &Diagram) -> String {
         .free
         .iter()
         .map(|line| spreadsheet_text(&format!("pM {}", bath.system.components[line.component])));
-    let mut write = |row: Vec<String>| {
+    let head = std::iter::once(x.to_owned()).chain(shares).chain(free).collect();
+    let rows = diagram.x.iter().enumerate().map(|(i, x)| {
+        let shares = diagram.series.iter().map(|series| number(at(&series.share, i)));
+        let free = diagram.free.iter().map(|line| number(-at(&line.log10_free, i)));
+        std::iter::once(number(*x)).chain(shares).chain(free).collect()
+    });
+    table(std::iter::once(head).chain(rows))
+}
+
+fn table(rows: impl Iterator<Item = Vec<String>>) -> String {
+    let mut writer = ::csv::WriterBuilder::new().flexible(true).from_writer(Vec::new());
+    for row in rows {
         if let Err(error) = writer.write_record(&row) {
             log::error!("a row of the table could not be written: {error}");
         }
-    };
-    write(std::iter::once(x.to_owned()).chain(shares).chain(free).collect());
-    for (i, x) in diagram.x.iter().enumerate() {
-        let shares = diagram.series.iter().map(|series| number(at(&series.share, i)));
-        let free = diagram.free.iter().map(|line| number(-at(&line.log10_free, i)));
-        write(std::iter::once(number(*x)).chain(shares).chain(free).collect());
     }
     let bytes = writer.into_inner().unwrap_or_else(|error| {
         log::error!("the table could not be finished: {}", error.error());

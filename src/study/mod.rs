@@ -1,10 +1,13 @@
-//! Pictures of a bath: distribution of metals and agents over pH or dose.
+//! Pictures of a bath: distribution of metals and agents over pH or dose, free metal over both.
 
+mod contour;
 mod csv;
 mod diagram;
 mod labels;
+mod map;
 mod svg;
 
-pub use csv::to_csv;
+pub use csv::{map_to_csv, to_csv};
 pub use diagram::{Axis, Basis, Diagram, FreeLine, Series, SolidRegion, diagram};
-pub use svg::to_svg;
+pub use map::{Map, MapArea, MapOf, map};
+pub use svg::{map_to_svg, to_svg};

@@ -4,6 +4,7 @@
 //! Nothing is told by colour alone: series differ by dash and carry their names, limits by the direction of their
 //! hatch, solids by their pattern.
 
+mod chart;
 mod mark;
 mod palette;
 mod pane;
@@ -12,6 +13,8 @@ mod paper;
 pub(super) mod sample;
 mod shares;
 mod strip;
+
+pub use chart::map_to_svg;
 
 use super::{Axis, Diagram};
 use crate::bath::Bath;

@@ -4,7 +4,9 @@
 mod systems;
 mod yardstick;
 
+use bathwright::bath::{Bath, DEMOS};
 use bathwright::equilibrium::{Equilibrium, Solver};
+use bathwright::study::{MapArea, MapOf, map};
 use std::collections::BTreeMap;
 use std::process::Command;
 use std::time::Instant;
@@ -60,6 +62,23 @@ fn main() {
         let (own, plain) = (warm(cases), plain_warm(cases));
         let ratio = plain.micros / plain.solved / own.micros;
         println!("{size:<10} {:>18} {:>18} {ratio:>7.1}", show(Some(&own)), show(Some(&plain)));
+    }
+    maps();
+}
+
+/// A map of 200 × 150 points over pH and dose of each demo bath, on two threads.
+fn maps() {
+    println!("map of 200 x 150 points, milliseconds");
+    for demo in DEMOS {
+        let bath = Bath::resolve(&demo.project().expect("demo baths read")).expect("demo baths resolve");
+        let range = bath.ph().expect("demo baths hold their pH");
+        let area = MapArea { agent: 0, ph: (range.low - 3.0, range.high + 2.0), points: (200, 150) };
+        let times = (0..REPEATS).map(|_| {
+            let begin = Instant::now();
+            std::hint::black_box(map(&bath, MapOf::Excess, area).expect("demo baths solve"));
+            begin.elapsed().as_secs_f64() * 1e3
+        });
+        println!("{:<24} {:>8.1}", demo.file, times.fold(f64::INFINITY, f64::min));
     }
 }
 

@@ -1,0 +1,45 @@
+//! `bathwright map`: free metal, or the share of the nearest limit, over pH and dose as SVG or CSV.
+
+use super::diagram::{basis, ph_ends};
+use super::{CommandError, Outcome, choose_agent, print, write_file};
+use crate::bath::Bath;
+use crate::study::{MapArea, MapOf, map, map_to_csv, map_to_svg};
+use std::io::Write;
+use std::path::Path;
+
+/// Points along pH and dose.
+const POINTS: (usize, usize) = (200, 150);
+
+pub fn run(
+    bath: &Bath,
+    of: Option<&str>,
+    agent: Option<&str>,
+    path: &Path,
+    out: &mut dyn Write,
+) -> Result<Outcome, CommandError> {
+    let (bath, agent) = choose_agent(bath, agent)?;
+    let of = match of {
+        Some("limit") => MapOf::Excess,
+        of => MapOf::Free(basis(&bath, of)?.0),
+    };
+    if of == MapOf::Excess && bath.walls().is_empty() {
+        return Err(CommandError::Option("limits is empty: set a ceiling for a free metal first".into()));
+    }
+    let drawn = map(&bath, of, MapArea { agent, ph: ph_ends(&bath), points: POINTS })?;
+    if drawn.span().is_none() {
+        return Err(CommandError::Option("no point of the map has an answer".to_owned()));
+    }
+    let text = match path.extension().and_then(|end| end.to_str()) {
+        Some("svg") => map_to_svg(&bath, &drawn),
+        Some("csv") => map_to_csv(&bath, &drawn),
+        _ => {
+            return Err(CommandError::Option(format!(
+                "--out is \"{}\": give a name that ends in .svg or .csv",
+                path.display()
+            )));
+        }
+    };
+    write_file(path, text.as_bytes())?;
+    print(out, &format!("{} written\n", path.display()))?;
+    Ok(Outcome::Done)
+}
