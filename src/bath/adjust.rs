@@ -128,26 +128,29 @@ impl<'a> Corrector<'a> {
         } else {
             (&self.bath.acid, balance.ph + NEGLIGIBLE_PH)
         };
+        // No addition is asked for where no meter shows the difference. It is counted all the same: what the bath is
+        // must not jump where a correction begins to be worth while.
         let negligible = wanted == 0.0 || wanted.signum() != balance.wanted(&mixed, other_ph)?.signum();
-        if negligible {
-            let Mixed { totals, dilution } = mixed;
-            return Ok(Corrected { totals, dilution, adjustment: None, failure: None });
-        }
-        Ok(match balance.root(self.bath, doses, adjuster, wanted)? {
+        let root =
+            if wanted == 0.0 { Some(0.0) } else { balance.root(self.bath, doses, adjuster, wanted)? };
+        Ok(match root {
             Some(dose_g_l) => {
                 let Mixed { totals, dilution } = self.bath.mixed(doses, Some((adjuster, dose_g_l)));
-                let adjustment = Some(Adjustment { product: adjuster.product.clone(), dose_g_l });
+                let adjustment = Adjustment { product: adjuster.product.clone(), dose_g_l };
+                let adjustment = Some(adjustment).filter(|_| !negligible);
                 Corrected { totals, dilution, adjustment, failure: None }
             }
             None => Corrected {
                 totals: mixed.totals,
                 dilution: mixed.dilution,
                 adjustment: None,
-                failure: Some(format!(
-                    "{} can't bring the pH back to {}; choose a stronger product under adjust",
-                    adjuster.product.name,
-                    crate::quantity::plain(balance.ph, 2)
-                )),
+                failure: (!negligible).then(|| {
+                    format!(
+                        "{} can't bring the pH back to {}; choose a stronger product under adjust",
+                        adjuster.product.name,
+                        crate::quantity::plain(balance.ph, 2)
+                    )
+                }),
             },
         })
     }

@@ -79,7 +79,9 @@ fn binding_words(bath: &Bath, aim: Aim, binding: &Binding) -> String {
         .collect();
     let place = place_words(bath, &binding.at);
     let head = format!("{} at {place}", wall_name(bath, binding.wall));
-    std::iter::once(head).chain(worsenings).collect::<Vec<_>>().join("; ")
+    let edge = (binding.per_decade == 0.0)
+        .then(|| "any less fails at once, as the last of a solid dissolves here".to_owned());
+    std::iter::once(head).chain(edge).chain(worsenings).collect::<Vec<_>>().join("; ")
 }
 
 fn json_text(bath: &Bath, found: Option<&Blend>) -> Result<Value, CommandError> {

@@ -20,7 +20,8 @@ pub struct Binding {
     pub wall: Wall,
     /// Where it binds.
     pub at: Reading,
-    /// What the last tenfold of this wall costs: price or grams per litre of bath and decade.
+    /// What the last tenfold of this wall costs: price or grams per litre of bath and decade; 0 where a little less fails
+    /// at once.
     pub per_decade: f64,
     /// What it would cost if the window reached a little further there.
     pub worsenings: Vec<Worsening>,
@@ -36,7 +37,9 @@ pub struct Worsening {
 }
 
 /// Excess (log10) under which a wall counts as touched.
-const TOUCHED: f64 = 2e-4;
+const TOUCHED: f64 = 1e-3;
+/// Share of a cap by which less is tried at once.
+const EDGE: f64 = 1e-5;
 /// How much further the window is tried.
 const PH_STEP: f64 = 0.1;
 const TEMPERATURE_STEP_C: f64 = 5.0;
@@ -77,8 +80,26 @@ pub(super) fn binding(
         worsenings.sort_by(|a, b| b.cost.total_cmp(&a.cost));
         found.push(Binding { wall: constraint.wall, at, per_decade: weight, worsenings });
     }
+    if found.is_empty() {
+        found.extend(edge(judge, goal, doses)?);
+    }
     found.sort_by(|a, b| b.per_decade.total_cmp(&a.per_decade));
     Ok(found)
+}
+
+/// The wall that a little less of everything would cross at once: where the last of a solid dissolves, uncertainty
+/// changes by a jump, and no slope tells a price.
+fn edge(judge: &mut Judge, goal: &Goal, doses: &[f64]) -> Result<Option<Binding>, EquilibriumError> {
+    let mut less = doses.to_vec();
+    for (&agent, (low, high)) in goal.agents.iter().zip(&goal.bounds) {
+        less[agent] = (less[agent] - EDGE * (high - low)).max(*low);
+    }
+    let crossed = constraints(judge, &less, goal.agents, goal.level)?;
+    let Some(crossed) = crossed.first().filter(|crossed| crossed.excess > 0.0) else { return Ok(None) };
+    let dosed = judge.assessor.places.dose(doses)?;
+    let value = judge.bath.limited_value(crossed.wall);
+    let at = judge.assessor.read(&dosed, value, crossed.place)?;
+    Ok(Some(Binding { wall: crossed.wall, at, per_decade: 0.0, worsenings: Vec::new() }))
 }
 
 /// Places a little outside the window, beyond the ends that a place touches.

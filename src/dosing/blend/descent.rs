@@ -28,7 +28,9 @@ impl Goal<'_> {
 const STEPS: usize = 40;
 /// First and last radius of the trust region, as a share of the width of the bounds.
 const FIRST_RADIUS: f64 = 0.15;
-const LAST_RADIUS: f64 = 3e-5;
+const LAST_RADIUS: f64 = 1e-8;
+/// Gain over the radius, as a share of the cost of all agents at their caps, under which the doses are at rest.
+const REST: f64 = 1e-6;
 /// Price of one decade of excess, as a multiple of the cost of all agents at their caps.
 const PENALTY: f64 = 10.0;
 /// Excess (log10) under the wall that the last steps aim at, so that rounding does not end outside.
@@ -59,12 +61,8 @@ pub(super) fn descend(judge: &mut Judge, goal: &Goal, start: &[f64]) -> Result<D
         }
         clamp(goal, &mut next);
         let predicted = merit(&doses, &here) - goal.cost(&next) - penalty * over;
-        if predicted <= 1e-9 * most {
-            radius *= 0.25;
-            if radius < LAST_RADIUS {
-                break;
-            }
-            continue;
+        if predicted <= REST * radius * most {
+            break;
         }
         let there = constraints(judge, &next, goal.agents, goal.level)?;
         let gained = merit(&doses, &here) - merit(&next, &there);
