@@ -14,6 +14,7 @@ mod operating;
 mod project;
 mod recipe;
 mod resolve;
+mod rinse;
 
 pub use adjust::{Adjuster, Adjustment, Corrected};
 pub use air::Air;
@@ -27,3 +28,4 @@ pub use project::{
     Adjust, AgentDose, Content, FORMAT, Limit, Project, Rule, SheetDetails, SolidRule, Tank, Trust,
 };
 pub use resolve::{Agent, Bath, Point, ResolvedLimit, Solids, Wall};
+pub use rinse::{Arrangement, FreshWater, PermitLimit, PhSpan, Rinse};

@@ -2,6 +2,7 @@
 
 use super::air::Air;
 use super::operating::{Ph, Range};
+use super::rinse::Rinse;
 use crate::chemistry::{OwnConstants, Product};
 use crate::equilibrium::ActivityModel;
 use crate::quantity::{Amount, Level};
@@ -50,6 +51,9 @@ pub struct Project {
     /// What the sheet needs to know.
     #[serde(default)]
     pub sheet: SheetDetails,
+    /// The rinse behind the bath and the treatment of its water.
+    #[serde(default, skip_serializing_if = "Rinse::is_default")]
+    pub rinse: Rinse,
     /// Own products.
     #[serde(default, skip_serializing_if = "Vec::is_empty")]
     pub products: Vec<Product>,
@@ -229,6 +233,7 @@ impl Project {
             adjust: Adjust::default(),
             activity: ActivityModel::default(),
             sheet: SheetDetails::default(),
+            rinse: Rinse::default(),
             products: Vec::new(),
             constants: OwnConstants::default(),
         }
