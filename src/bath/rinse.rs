@@ -36,12 +36,14 @@ pub struct FreshWater {
     /// Hydrogen carbonate; as much as the hardness calls for without it.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub hydrogen_carbonate: Option<Amount>,
+    /// Its pH: so much carbon dioxide is in it (town water is commonly near 7.5).
+    pub ph: f64,
 }
 
 impl Default for FreshWater {
     fn default() -> Self {
         let hardness = |value| Amount::new(value, Unit::MilligramCalciumCarbonatePerLitre);
-        Self { calcium: hardness(150.0), magnesium: hardness(50.0), hydrogen_carbonate: None }
+        Self { calcium: hardness(150.0), magnesium: hardness(50.0), hydrogen_carbonate: None, ph: 7.5 }
     }
 }
 
@@ -135,6 +137,7 @@ impl Rinse {
             ("drag_out_l_h", self.drag_out_l_h, 1e-6..=1e6, "give litres of bath per hour, more than 0"),
             ("flow_l_h", self.flow_l_h, 1e-6..=1e9, "give litres of fresh water per hour, more than 0"),
             ("stages", f64::from(self.stages), 1.0..=10.0, "give 1 to 10 rinse stages"),
+            ("water.ph", self.water.ph, 4.0..=11.0, "give the pH of the fresh water, 4 to 11"),
             ("temperature_c", self.temperature_c, 0.0..=60.0, "give a temperature between 0 and 60 °C"),
             ("hours_per_day", self.hours_per_day, 0.01..=24.0, "give hours a day, up to 24"),
             ("treatment_ph.low", low, 2.0..=13.0, "give the lowest treatment pH, 2 to 13"),

@@ -50,6 +50,17 @@ pub enum Command {
         #[arg(long, value_enum, default_value_t = PaperSize::A4)]
         paper: PaperSize,
     },
+    /// Print what the rinse water does with the agent: stages, treatment, limits, what breaks the complex.
+    Rinse {
+        /// Project file.
+        file: PathBuf,
+        /// Product id, name or agent, at its smallest dose that holds; the doses of the project without it.
+        #[arg(long)]
+        agent: Option<String>,
+        /// One JSON object instead of tables.
+        #[arg(long)]
+        json: bool,
+    },
     /// Write a distribution diagram.
     Diagram {
         /// Project file.

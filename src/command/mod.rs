@@ -1,4 +1,4 @@
-//! Bathwright without a window: `solve`, `dose`, `sheet` and `diagram` for scripts and machines without a display.
+//! Bathwright without a window: `solve`, `dose`, `sheet`, `diagram` and `rinse` for scripts and machines without a display.
 //!
 //! Exit codes: 0 done, 1 no dose holds, 2 bad input.
 
@@ -6,6 +6,7 @@ mod arguments;
 mod diagram;
 mod dose;
 mod report;
+mod rinse;
 mod sheet;
 mod solve;
 mod table;
@@ -83,6 +84,9 @@ pub fn run(command: &Command, out: &mut dyn Write) -> Result<Outcome, CommandErr
     match command {
         Command::Solve { file, json } => solve::run(&open(file)?, *json, out),
         Command::Dose { file, agent, json } => dose::run(&open(file)?, agent.as_deref(), *json, out),
+        Command::Rinse { file, agent, json } => {
+            rinse::run(&open(file)?, agent.as_deref(), *json, &file.display().to_string(), out)
+        }
         Command::Sheet { file, out: path, agent, paper } => {
             sheet::run(&open(file)?, agent.as_deref(), *paper, path, file, out)
         }

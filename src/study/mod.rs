@@ -1,8 +1,9 @@
-//! Pictures of a bath: distribution of metals and agents over pH or dose.
+//! Pictures and stories of a bath: distribution of metals and agents over pH or dose, rinse water and its treatment.
 
 mod csv;
 mod diagram;
 mod labels;
+pub mod rinse;
 mod svg;
 
 pub use csv::to_csv;
