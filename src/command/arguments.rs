@@ -61,6 +61,20 @@ pub enum Command {
         #[arg(long)]
         json: bool,
     },
+    /// Compare two agents, each at its own smallest dose that holds.
+    Compare {
+        /// Project file.
+        file: PathBuf,
+        /// Product id, name or agent.
+        #[arg(long)]
+        with: String,
+        /// Product id, name or agent to compare with it.
+        #[arg(long)]
+        and: String,
+        /// One JSON object instead of a table.
+        #[arg(long)]
+        json: bool,
+    },
     /// Write a distribution diagram.
     Diagram {
         /// Project file.

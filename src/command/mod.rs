@@ -1,8 +1,10 @@
-//! Bathwright without a window: `solve`, `dose`, `sheet`, `diagram` and `rinse` for scripts and machines without a display.
+//! Bathwright without a window: `solve`, `dose`, `sheet`, `diagram`, `rinse` and `compare`, for scripts and machines
+//! without a display.
 //!
 //! Exit codes: 0 done, 1 no dose holds, 2 bad input.
 
 mod arguments;
+mod compare;
 mod diagram;
 mod dose;
 mod report;
@@ -84,6 +86,9 @@ pub fn run(command: &Command, out: &mut dyn Write) -> Result<Outcome, CommandErr
     match command {
         Command::Solve { file, json } => solve::run(&open(file)?, *json, out),
         Command::Dose { file, agent, json } => dose::run(&open(file)?, agent.as_deref(), *json, out),
+        Command::Compare { file, with, and, json } => {
+            compare::run(&open(file)?, (with, and), *json, &file.display().to_string(), out)
+        }
         Command::Rinse { file, agent, json } => {
             rinse::run(&open(file)?, agent.as_deref(), *json, &file.display().to_string(), out)
         }

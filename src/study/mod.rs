@@ -1,5 +1,7 @@
-//! Pictures and stories of a bath: distribution of metals and agents over pH or dose, rinse water and its treatment.
+//! Pictures and stories of a bath: distribution of metals and agents over pH or dose, rinse water and its
+//! treatment, two agents side by side.
 
+pub mod compare;
 mod csv;
 mod diagram;
 mod labels;

@@ -12,7 +12,7 @@ mod treat;
 mod water;
 
 pub use breaking::{AcidStep, Breaking, Broken, METHODS, Method};
-pub use dissolved::{AppliedLimit, Watched, dissolved_mol_l, holders};
+pub use dissolved::{AppliedLimit, Watched, dissolved_mol_l, holders, sigma_log10 as dissolved_sigma};
 pub use stages::{shares, waste_share};
 pub use treat::{Poured, Treated, to_ph};
 pub use water::RinseWater;
