@@ -6,7 +6,9 @@ use bathwright::bath::{
 use bathwright::bath::{SheetDetails, Trust};
 use bathwright::equilibrium::{ActivityModel, log10_kw};
 use bathwright::quantity::{Amount, Unit};
-use bathwright::study::rinse::{METHODS, RinseStudy, RinseWater, rinse, shares, to_ph, watched_in};
+use bathwright::study::rinse::{
+    METHODS, RinseStudy, RinseWater, rinse, shares, sludge_g_l, to_ph, watched_in,
+};
 
 fn contents(lines: &[(&str, &str)]) -> Vec<Content> {
     let line = |(what, amount): &(&str, &str)| Content {
@@ -114,6 +116,17 @@ fn dissolved_metal_and_solids_add_up_to_what_the_water_brought() {
             }
         }
     }
+}
+
+/// By hand: a millimole of nickel as hydroxide is 92.7 mg.
+#[test]
+fn sludge_is_the_mass_of_what_precipitates() {
+    let mut project = project(&[("nickel", "0.1 mol/L"), ("nitrate", "0.2 mol/L")]);
+    project.rinse.treatment_ph = PhSpan { low: 10.5, high: 10.5 };
+    let study = study(&project);
+    let treated = study.scan[0].with_agents.as_ref().unwrap();
+    let sludge = sludge_g_l(&study.water, &treated.solution);
+    assert!((sludge - 0.0927).abs() < 0.0002, "{sludge}");
 }
 
 /// The amount of lime or acid comes from a root at a held pH; poured into the water with nothing held, it must give

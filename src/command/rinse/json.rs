@@ -2,7 +2,7 @@
 
 use super::formed;
 use crate::bath::Bath;
-use crate::study::rinse::{Broken, RinseStudy, Treated, Water};
+use crate::study::rinse::{Broken, RinseStudy, Treated, Water, sludge_g_l};
 use serde_json::{Value, json};
 
 /// The whole study; its fields are documented in the README.
@@ -69,6 +69,7 @@ fn treated_json(study: &RinseStudy, treated: &Treated) -> Value {
         "dissolved_mg_per_L": dissolved,
         "share_of_limit": treated.worst_share(&study.watched),
         "solids_mol_per_L": solids,
+        "dry_sludge_g_per_L": sludge_g_l(&study.water, &treated.solution),
     })
 }
 

@@ -6,7 +6,7 @@ use crate::bath::{Bath, Rinse};
 use crate::chemistry::pretty;
 use crate::dosing::share_of_limit;
 use crate::quantity::{fixed, percent, significant};
-use crate::study::rinse::{Breaking, Broken, RinseStudy, Treated, Water, holders};
+use crate::study::rinse::{Breaking, Broken, RinseStudy, Treated, Water, holders, sludge_g_l};
 
 /// The whole study.
 pub fn text(bath: &Bath, doses: &[f64], study: &RinseStudy) -> String {
@@ -97,7 +97,7 @@ fn treatment(study: &RinseStudy) -> String {
     }
     let mut header = vec!["pH", "g/L of water"];
     header.extend(names.iter().map(String::as_str));
-    header.push("solids with the agents");
+    header.extend(["dry sludge g/L", "solids with the agents"]);
     let mut table = Table::new(&header);
     for point in &study.scan {
         let mut cells = vec![fixed(point.ph, 1)];
@@ -110,8 +110,13 @@ fn treatment(study: &RinseStudy) -> String {
             cells.push(number(point.with_agents.as_ref().map(|treated| treated.dissolved_mg_l[i])));
             cells.push(number(point.without_mg_l.as_ref().map(|without| without[i])));
         }
-        let solids = point.with_agents.as_ref().map(|treated| solids_text(study, formed(treated)));
-        cells.push(solids.unwrap_or_else(|| "–".to_owned()));
+        match &point.with_agents {
+            Some(treated) => {
+                cells.push(significant(sludge_g_l(&study.water, &treated.solution), 2));
+                cells.push(solids_text(study, formed(treated)));
+            }
+            None => cells.extend(["–".to_owned(), "–".to_owned()]),
+        }
         table.line(cells);
     }
     format!("\nTreated with acid or alkali alone: metal that stays dissolved, mg/L\n{}", table.text())

@@ -5,7 +5,7 @@ use super::chelate::{ChelateEffect, chelate_effect};
 use crate::bath::{AgentDose, Bath, BathError, Corrected, Flag, Solids, flags};
 use crate::dosing::{Assessment, Assessor, Hold, LedgerEntry, Search, ledger, search};
 use crate::equilibrium::{Equilibrium, EquilibriumError, Solver};
-use crate::study::rinse::{RinseWater, Watched, dissolved_sigma, to_ph, watched_in};
+use crate::study::rinse::{RinseWater, Watched, dissolved_sigma, sludge_g_l, to_ph, watched_in};
 
 /// Treatment pH at which effluents are compared: mixed waste is run at 8.8 to 9.5 (common practice).
 pub const EFFLUENT_PH: f64 = 9.0;
@@ -56,6 +56,10 @@ pub struct Effluent {
     pub dissolved_mg_l: Vec<f64>,
     /// Standard uncertainties of their log10.
     pub sigma: Vec<f64>,
+    /// Acid or alkali of the treatment, kg a day, and its name.
+    pub poured_kg_day: Option<(f64, String)>,
+    /// Dry sludge, kg a day.
+    pub sludge_kg_day: f64,
 }
 
 /// The bath with one product and without the other; caps as listed, else that of the first agent.
@@ -180,5 +184,12 @@ fn effluent(bath: &Bath, doses: &[f64]) -> Result<Option<Effluent>, BathError> {
             dissolved_sigma(&water, &treated.totals, EFFLUENT_PH, &treated.solution, &metal.components)
         })
         .collect();
-    Ok(Some(Effluent { dissolved_mg_l: treated.dissolved_mg_l, sigma: sigma?, watched }))
+    let litres = line.flow_l_h * line.hours_per_day;
+    Ok(Some(Effluent {
+        poured_kg_day: treated.poured.map(|poured| (poured.g_l * litres * 1e-3, poured.name)),
+        sludge_kg_day: sludge_g_l(&water, &treated.solution) * litres * 1e-3,
+        dissolved_mg_l: treated.dissolved_mg_l,
+        sigma: sigma?,
+        watched,
+    }))
 }

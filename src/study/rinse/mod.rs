@@ -190,6 +190,18 @@ pub fn watched_in(bath: &Bath, water: &RinseWater) -> Result<Vec<Watched>, BathE
     dissolved::watched(bath, water)
 }
 
+/// Dry mass of the solids in a treated water, g/L; what comes from the filter press holds several times as much water.
+pub fn sludge_g_l(water: &RinseWater, solution: &Equilibrium) -> f64 {
+    let library = &water.bath.library;
+    let solids = water.bath.system.solids.iter().zip(&solution.solids).filter(|(_, n)| **n > 0.0);
+    solids
+        .filter_map(|(entry, n)| {
+            let solid = library.solids.iter().find(|solid| solid.record.token == entry.token)?;
+            Some(n * Formula::parse(&solid.record.formula).ok()?.molar_mass())
+        })
+        .sum()
+}
+
 /// Treatment pH values from low to high.
 fn treatment_ph(low: f64, high: f64) -> Vec<f64> {
     let mut values: Vec<f64> =
