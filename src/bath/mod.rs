@@ -15,6 +15,7 @@ mod operating;
 mod project;
 mod recipe;
 mod resolve;
+mod rinse;
 mod solving;
 mod wall;
 
@@ -31,5 +32,6 @@ pub use project::{
     Adjust, AgentDose, Content, FORMAT, Limit, Project, Rule, SheetDetails, SolidRule, Tank, Trust,
 };
 pub use resolve::{Agent, Bath};
+pub use rinse::{Arrangement, FreshWater, PermitLimit, PhSpan, Rinse};
 pub use solving::{Point, Points, Solids};
 pub use wall::{Derived, ResolvedDerived, ResolvedLimit, Wall};

@@ -3,6 +3,7 @@
 use super::air::Air;
 use super::drift::Drift;
 use super::operating::{Ph, Range};
+use super::rinse::Rinse;
 use super::wall::Derived;
 use crate::chemistry::{OwnConstants, Product};
 use crate::equilibrium::ActivityModel;
@@ -55,6 +56,9 @@ pub struct Project {
     /// What the sheet needs to know.
     #[serde(default)]
     pub sheet: SheetDetails,
+    /// The rinse behind the bath and the treatment of its water.
+    #[serde(default, skip_serializing_if = "Rinse::is_default")]
+    pub rinse: Rinse,
     /// Own products.
     #[serde(default, skip_serializing_if = "Vec::is_empty")]
     pub products: Vec<Product>,
@@ -245,6 +249,7 @@ impl Project {
             adjust: Adjust::default(),
             activity: ActivityModel::default(),
             sheet: SheetDetails::default(),
+            rinse: Rinse::default(),
             products: Vec::new(),
             constants: OwnConstants::default(),
         }

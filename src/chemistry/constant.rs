@@ -37,7 +37,7 @@ pub struct Component {
     /// Elemental formula of the acid that shops weigh or report ("as acid").
     #[serde(default, skip_serializing_if = "Option::is_none")]
     pub acid_form: Option<String>,
-    /// Donor atoms in a 1:1 chelate.
+    /// Most donor atoms in a 1:1 chelate; the file says what the counts rest on.
     #[serde(default, skip_serializing_if = "Option::is_none")]
     pub donors: Option<u8>,
     /// Why this component does not follow equilibrium in a tank, in one clause.

@@ -5,6 +5,7 @@
 //! knows nothing of baths, solvers or files on disk.
 
 mod constant;
+mod discharge;
 mod error;
 mod formula;
 mod interaction;
@@ -18,6 +19,7 @@ mod resolve;
 mod solid_record;
 
 pub use constant::{Basis, Component, ComponentKind, Constant, Convention};
+pub use discharge::{DischargeLimit, Regime};
 pub use error::ChemistryError;
 pub use formula::Formula;
 pub use interaction::{Epsilon, EpsilonOrigin, EpsilonRule, Interaction, Interactions, Ions, ModelNumber};

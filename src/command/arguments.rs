@@ -68,6 +68,31 @@ pub enum Command {
         #[arg(long)]
         agent: Option<String>,
     },
+    /// Print what the rinse water does with the agent: stages, treatment, limits, what breaks the complex.
+    Rinse {
+        /// Project file.
+        file: PathBuf,
+        /// Product id, name or agent, at its smallest dose that holds; the doses of the project without it.
+        #[arg(long)]
+        agent: Option<String>,
+        /// One JSON object instead of tables.
+        #[arg(long)]
+        json: bool,
+    },
+    /// Compare two agents, each at its own smallest dose that holds.
+    Compare {
+        /// Project file.
+        file: PathBuf,
+        /// Product id, name or agent.
+        #[arg(long)]
+        with: String,
+        /// Product id, name or agent to compare with it.
+        #[arg(long)]
+        and: String,
+        /// One JSON object instead of a table.
+        #[arg(long)]
+        json: bool,
+    },
     /// Write a distribution diagram.
     Diagram {
         /// Project file.

@@ -1,13 +1,16 @@
-//! Bathwright without a window: `solve`, `dose`, `sheet` and `diagram` for scripts and machines without a display.
+//! Bathwright without a window: `solve`, `dose`, `sheet`, `diagram`, `rinse` and `compare`, for scripts and machines
+//! without a display.
 //!
 //! Exit codes: 0 done, 1 no dose holds, 2 bad input.
 
 mod arguments;
 mod blend;
+mod compare;
 mod diagram;
 mod dose;
 mod map;
 mod report;
+mod rinse;
 mod sheet;
 mod solve;
 mod table;
@@ -92,6 +95,12 @@ pub fn run(command: &Command, out: &mut dyn Write) -> Result<Outcome, CommandErr
             blend::run(&open(file)?, aim, *json, out)
         }
         Command::Dose { file, agent, json, .. } => dose::run(&open(file)?, agent.as_deref(), *json, out),
+        Command::Compare { file, with, and, json } => {
+            compare::run(&open(file)?, (with, and), *json, &file.display().to_string(), out)
+        }
+        Command::Rinse { file, agent, json } => {
+            rinse::run(&open(file)?, agent.as_deref(), *json, &file.display().to_string(), out)
+        }
         Command::Sheet { file, out: path, agent, paper } => {
             sheet::run(&open(file)?, agent.as_deref(), *paper, path, file, out)
         }

@@ -14,7 +14,12 @@ impl Table {
 
     /// Adds a row.
     pub fn row<const N: usize>(&mut self, cells: [String; N]) {
-        self.rows.push(cells.to_vec());
+        self.line(cells.to_vec());
+    }
+
+    /// Adds a row of as many cells as the header has.
+    pub fn line(&mut self, cells: Vec<String>) {
+        self.rows.push(cells);
     }
 
     /// The text: first column to the left, the others too, two spaces between.

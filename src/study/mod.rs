@@ -1,10 +1,13 @@
-//! Pictures of a bath: distribution of metals and agents over pH or dose, free metal over both.
+//! Pictures and stories of a bath: distribution of metals and agents over pH or dose, free metal over both, rinse water
+//! and its treatment, two agents side by side.
 
+pub mod compare;
 mod contour;
 mod csv;
 mod diagram;
 mod labels;
 mod map;
+pub mod rinse;
 mod svg;
 
 pub use csv::{map_to_csv, to_csv};
