@@ -1,6 +1,7 @@
 //! The project as it is saved: what the chemist typed, in the units it was typed in.
 
 use super::air::Air;
+use super::analysis::Analysis;
 use super::drift::Drift;
 use super::operating::{Ph, Range};
 use super::wall::Derived;
@@ -55,6 +56,9 @@ pub struct Project {
     /// What the sheet needs to know.
     #[serde(default)]
     pub sheet: SheetDetails,
+    /// What the laboratory found.
+    #[serde(default, skip_serializing_if = "Analysis::is_default")]
+    pub analysis: Analysis,
     /// Own products.
     #[serde(default, skip_serializing_if = "Vec::is_empty")]
     pub products: Vec<Product>,
@@ -245,6 +249,7 @@ impl Project {
             adjust: Adjust::default(),
             activity: ActivityModel::default(),
             sheet: SheetDetails::default(),
+            analysis: Analysis::default(),
             products: Vec::new(),
             constants: OwnConstants::default(),
         }
