@@ -42,8 +42,8 @@ fn json(output: &Output) -> Value {
 }
 
 #[test]
-fn six_demo_baths_solve_with_a_certificate_that_holds() {
-    assert!(demos().len() >= 6);
+fn nine_demo_baths_solve_with_a_certificate_that_holds() {
+    assert!(demos().len() >= 9);
     for file in demos() {
         let output = run!("solve", &file, "--json");
         assert_eq!(output.status.code(), Some(0), "{}: {}", file.display(), text(&output.stderr));

@@ -1,11 +1,19 @@
 //! The decision on each demo bath, checked by an independent fine scan of the doses.
 
-use bathwright::bath::{Bath, DEMOS, Solids, Wall};
+use bathwright::bath::{Bath, DEMOS, ResolvedDerived, Solids, Wall};
 use bathwright::dosing::{Assessor, Band, Hold, search};
 use bathwright::equilibrium::{LN_10, Solver};
 
 fn hold_at(bands: &[Band], dose: f64) -> Option<Hold> {
     bands.iter().find(|band| band.from <= dose && dose <= band.to).map(|band| band.hold)
+}
+
+/// 61 values over a held range; a predicted pH follows from the totals.
+fn all_ph(bath: &Bath) -> Vec<Option<f64>> {
+    bath.ph().map_or_else(
+        || vec![None],
+        |range| (0..=60).map(|i| Some(range.low + (range.high - range.low) * f64::from(i) / 60.0)).collect(),
+    )
 }
 
 /// Largest excess over all walls by brute force: a dense grid of pH and the three temperatures, no refinement.
@@ -16,14 +24,15 @@ fn brute_force(bath: &Bath, doses: &[f64]) -> f64 {
     for temperature in [t.low, t.set, t.high] {
         let constants = bath.constants_at(temperature);
         let mut solver = Solver::new();
-        let range = bath.ph().expect("the demo baths hold their pH");
-        for step in 0..=60 {
-            let ph = range.low + (range.high - range.low) * f64::from(step) / 60.0;
-            let s = bath.solve_totals(&mut solver, &constants, &totals, Some(ph), Solids::Walls).unwrap();
+        for ph in all_ph(bath) {
+            let s = bath.solve_totals(&mut solver, &constants, &totals, ph, Solids::Walls).unwrap();
             for limit in &bath.limits {
                 let log_free = s.ln_c[limit.component] / LN_10;
                 worst = worst.max(limit.ceiling.map_or(f64::NEG_INFINITY, |c| log_free - c.log10()));
                 worst = worst.max(limit.floor.map_or(f64::NEG_INFINITY, |f| f.log10() - log_free));
+                if let Some(ResolvedDerived::Solid(solid, margin)) = limit.derived {
+                    worst = worst.max(s.saturation_index(solid) + margin);
+                }
             }
             for (k, rule) in bath.rules.iter().enumerate() {
                 if *rule == bathwright::bath::Rule::MustNotForm {
@@ -78,7 +87,12 @@ fn the_worst_case_is_never_better_than_any_point_of_the_range() {
         let bath = Bath::resolve(&demo.project().unwrap()).unwrap();
         let doses: Vec<f64> = bath.agents.iter().map(|agent| 0.3 * agent.max_g_l).collect();
         let assessment = Assessor::new(&bath).unwrap().assess(&doses).unwrap();
-        assert!(assessment.walls.iter().any(|wall| matches!(wall.wall, Wall::Ceiling(_) | Wall::Solid(_))));
+        assert!(
+            assessment
+                .walls
+                .iter()
+                .any(|wall| matches!(wall.wall, Wall::Ceiling(_) | Wall::Solid(_) | Wall::Derived(_)))
+        );
         let brute = brute_force(&bath, &doses);
         assert!(
             assessment.excess() >= brute - 1e-6,

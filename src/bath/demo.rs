@@ -26,6 +26,9 @@ pub const DEMOS: &[Demo] = demos![
     "hard_water_cleaner.ron",
     "pyrophosphate_copper.ron",
     "derusting.ron",
+    "zinc_nickel.ron",
+    "citric_descaler.ron",
+    "aluminium_etch.ron",
 ];
 
 impl Demo {

@@ -5,6 +5,7 @@
 
 mod adjust;
 mod air;
+mod analysis;
 mod demo;
 mod drift;
 mod error;
@@ -21,6 +22,7 @@ mod wall;
 
 pub use adjust::{Adjuster, Adjustment, Corrected, Corrector};
 pub use air::Air;
+pub use analysis::{Analysis, Analyzed, Finding, HARDNESS, MeterReading, Origin};
 pub use demo::{DEMOS, Demo};
 pub use drift::{Drift, DriftAxis, HardnessRange, LoadRange, MAX_DRIFTS, Position, Span};
 pub use error::BathError;

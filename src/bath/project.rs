@@ -1,6 +1,7 @@
 //! The project as it is saved: what the chemist typed, in the units it was typed in.
 
 use super::air::Air;
+use super::analysis::Analysis;
 use super::drift::Drift;
 use super::operating::{Ph, Range};
 use super::rinse::Rinse;
@@ -59,6 +60,9 @@ pub struct Project {
     /// The rinse behind the bath and the treatment of its water.
     #[serde(default, skip_serializing_if = "Rinse::is_default")]
     pub rinse: Rinse,
+    /// What the laboratory found.
+    #[serde(default, skip_serializing_if = "Analysis::is_default")]
+    pub analysis: Analysis,
     /// Own products.
     #[serde(default, skip_serializing_if = "Vec::is_empty")]
     pub products: Vec<Product>,
@@ -250,6 +254,7 @@ impl Project {
             activity: ActivityModel::default(),
             sheet: SheetDetails::default(),
             rinse: Rinse::default(),
+            analysis: Analysis::default(),
             products: Vec::new(),
             constants: OwnConstants::default(),
         }

@@ -37,7 +37,7 @@ const SEED: u64 = 1;
 /// Searches, rounds, plans and judges.
 pub fn decide(bath: &Bath, name: Option<&str>) -> Result<Decision, CommandError> {
     let (mut bath, agent) = choose_agent(bath, name)?;
-    if bath.limits.iter().all(|limit| limit.ceiling.is_none() && limit.floor.is_none()) {
+    if bath.walls().is_empty() {
         return Err(CommandError::Option(
             "limits is empty: set a ceiling for a free metal, then find the dose".into(),
         ));
