@@ -14,6 +14,8 @@ mod operating;
 mod project;
 mod recipe;
 mod resolve;
+mod running;
+mod shift;
 
 pub use adjust::{Adjuster, Adjustment, Corrected};
 pub use air::Air;
@@ -27,3 +29,5 @@ pub use project::{
     Adjust, AgentDose, Content, FORMAT, Limit, Project, Rule, SheetDetails, SolidRule, Tank, Trust,
 };
 pub use resolve::{Agent, Bath, Point, ResolvedLimit, Solids, Wall};
+pub use running::Running;
+pub use shift::{Load, Rate, Replenish, Shift, Water};

@@ -2,6 +2,7 @@
 
 use super::air::Air;
 use super::operating::{Ph, Range};
+use super::shift::Shift;
 use crate::chemistry::{OwnConstants, Product};
 use crate::equilibrium::ActivityModel;
 use crate::quantity::{Amount, Level};
@@ -50,6 +51,9 @@ pub struct Project {
     /// What the sheet needs to know.
     #[serde(default)]
     pub sheet: SheetDetails,
+    /// What a shift does to the bath.
+    #[serde(default, skip_serializing_if = "Shift::is_default")]
+    pub shift: Shift,
     /// Own products.
     #[serde(default, skip_serializing_if = "Vec::is_empty")]
     pub products: Vec<Product>,
@@ -229,6 +233,7 @@ impl Project {
             adjust: Adjust::default(),
             activity: ActivityModel::default(),
             sheet: SheetDetails::default(),
+            shift: Shift::default(),
             products: Vec::new(),
             constants: OwnConstants::default(),
         }
