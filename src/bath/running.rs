@@ -38,6 +38,18 @@ pub struct Running<'a> {
     pub decay_h: Vec<f64>,
 }
 
+impl Running<'_> {
+    /// Steps of the whole forecast.
+    pub fn steps(&self) -> usize {
+        self.shifts * self.steps_per_shift
+    }
+
+    /// The same with a bath of its own.
+    pub fn into_owned(self) -> Running<'static> {
+        Running { bath: Cow::Owned(self.bath.into_owned()), ..self }
+    }
+}
+
 impl Bath {
     /// Resolves a shift of this bath.
     ///

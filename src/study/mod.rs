@@ -1,8 +1,9 @@
-//! Pictures of a bath: distribution of metals and agents over pH or dose.
+//! Pictures and stories of a bath: distribution of metals and agents over pH or dose, the shift forecast.
 
 mod csv;
 mod diagram;
 mod labels;
+pub mod shift;
 mod svg;
 
 pub use csv::to_csv;
