@@ -1,4 +1,4 @@
-//! Bathwright without a window: `solve`, `dose`, `sheet` and `diagram` for scripts and machines without a display.
+//! Bathwright without a window: `solve`, `dose`, `sheet`, `diagram` and `shift` for scripts and machines without a display.
 //!
 //! Exit codes: 0 done, 1 no dose holds, 2 bad input.
 
@@ -7,6 +7,8 @@ mod diagram;
 mod dose;
 mod report;
 mod sheet;
+mod shift;
+mod shift_json;
 mod solve;
 mod table;
 
@@ -94,6 +96,11 @@ pub fn run(command: &Command, out: &mut dyn Write) -> Result<Outcome, CommandErr
                 points: *points,
             };
             diagram::run(&open(file)?, &wish, path, out)
+        }
+        Command::Shift { file, shifts, agent, json, out: path } => {
+            let wish =
+                shift::Wish { shifts: *shifts, agent: agent.as_deref(), json: *json, out: path.as_deref() };
+            shift::run(&open(file)?, &wish, out)
         }
     }
 }

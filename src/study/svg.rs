@@ -11,6 +11,7 @@ mod paper;
 #[cfg(test)]
 pub(super) mod sample;
 mod shares;
+pub(super) mod shift;
 mod strip;
 
 use super::{Axis, Diagram};
