@@ -102,3 +102,44 @@ fn the_worst_case_is_never_better_than_any_point_of_the_range() {
         );
     }
 }
+
+/// Uncertainty jumps where a solid comes or goes, so a coarse scan of pH can step over the worst place.
+#[test]
+fn no_ph_of_the_range_is_worse_with_confidence_than_the_assessment_says() {
+    for demo in DEMOS {
+        let bath = Bath::resolve(&demo.project().unwrap()).unwrap();
+        let found = search(&bath, 0).unwrap().found.unwrap();
+        let mut doses = bath.doses();
+        doses[0] = found.dose_g_l;
+        let said = Assessor::new(&bath).unwrap().assess(&doses).unwrap().excess_95();
+        let totals = bath.corrected(&doses).unwrap().totals;
+        let t = bath.project.tank.temperature_c;
+        let steps = (0..=100).map(|step| f64::from(step) / 100.0);
+        let ph: Vec<Option<f64>> = match bath.ph() {
+            Some(range) => steps.map(|share| Some(range.low + (range.high - range.low) * share)).collect(),
+            None => vec![None],
+        };
+        let mut worst = f64::NEG_INFINITY;
+        for temperature in [t.low, t.set, t.high] {
+            let constants = bath.constants_at(temperature);
+            let mut solver = Solver::new();
+            for &ph in &ph {
+                let s = bath.solve_totals(&mut solver, &constants, &totals, ph, Solids::Walls).unwrap();
+                for wall in bath.walls() {
+                    let excess = bath.excess(wall, &s, temperature);
+                    if excess > -2.0 {
+                        let value = bath.limited_value(wall);
+                        let ask = |answers: &bathwright::equilibrium::Sensitivities| {
+                            answers.sigma_log10(&[value])[0]
+                        };
+                        let sigma =
+                            bath.sensitivities(&constants, &totals, ph, Solids::Walls, &s, ask).unwrap();
+                        worst = worst.max(excess + bathwright::dosing::CONFIDENCE_95 * sigma);
+                    }
+                }
+            }
+        }
+        assert!(said >= worst - 0.01, "{}: {said} against {worst}", demo.file);
+        assert!(said <= worst + 0.05, "{}: {said} against {worst}", demo.file);
+    }
+}

@@ -17,6 +17,8 @@ mod project;
 mod recipe;
 mod resolve;
 mod rinse;
+mod running;
+mod shift;
 mod solving;
 mod wall;
 
@@ -35,5 +37,7 @@ pub use project::{
 };
 pub use resolve::{Agent, Bath};
 pub use rinse::{Arrangement, FreshWater, PermitLimit, PhSpan, Rinse};
+pub use running::Running;
+pub use shift::{Load, Rate, Replenish, Shift, Water};
 pub use solving::{Point, Points, Solids};
 pub use wall::{Derived, ResolvedDerived, ResolvedLimit, Wall};

@@ -5,6 +5,7 @@ use super::analysis::Analysis;
 use super::drift::Drift;
 use super::operating::{Ph, Range};
 use super::rinse::Rinse;
+use super::shift::Shift;
 use super::wall::Derived;
 use crate::chemistry::{OwnConstants, Product};
 use crate::equilibrium::ActivityModel;
@@ -63,6 +64,9 @@ pub struct Project {
     /// What the laboratory found.
     #[serde(default, skip_serializing_if = "Analysis::is_default")]
     pub analysis: Analysis,
+    /// What a shift does to the bath.
+    #[serde(default, skip_serializing_if = "Shift::is_default")]
+    pub shift: Shift,
     /// Own products.
     #[serde(default, skip_serializing_if = "Vec::is_empty")]
     pub products: Vec<Product>,
@@ -255,6 +259,7 @@ impl Project {
             sheet: SheetDetails::default(),
             rinse: Rinse::default(),
             analysis: Analysis::default(),
+            shift: Shift::default(),
             products: Vec::new(),
             constants: OwnConstants::default(),
         }

@@ -113,6 +113,23 @@ pub enum Command {
         #[arg(long, default_value_t = 400, value_parser = clap::value_parser!(u32).range(2..=20_000))]
         points: u32,
     },
+    /// Forecast the bath through its shifts, and plan the additions that hold it.
+    Shift {
+        /// Project file.
+        file: PathBuf,
+        /// Shifts to look ahead; as the project says without it.
+        #[arg(long)]
+        shifts: Option<u32>,
+        /// Product id, name or agent; the bath's first agent without it.
+        #[arg(long)]
+        agent: Option<String>,
+        /// One JSON object instead of tables.
+        #[arg(long)]
+        json: bool,
+        /// Where to write the hours as well: .svg or .csv.
+        #[arg(long)]
+        out: Option<PathBuf>,
+    },
 }
 
 /// What a blend is to be least in.

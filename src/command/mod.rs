@@ -1,5 +1,4 @@
-//! Bathwright without a window: `solve`, `dose`, `sheet`, `diagram`, `rinse` and `compare`, for scripts and machines
-//! without a display.
+//! Bathwright without a window, for scripts and machines without a display: one file for each command.
 //!
 //! Exit codes: 0 done, 1 no dose holds, 2 bad input.
 
@@ -12,6 +11,8 @@ mod map;
 mod report;
 mod rinse;
 mod sheet;
+mod shift;
+mod shift_json;
 mod solve;
 mod table;
 
@@ -115,6 +116,11 @@ pub fn run(command: &Command, out: &mut dyn Write) -> Result<Outcome, CommandErr
                 points: *points,
             };
             diagram::run(&open(file)?, &wish, path, out)
+        }
+        Command::Shift { file, shifts, agent, json, out: path } => {
+            let wish =
+                shift::Wish { shifts: *shifts, agent: agent.as_deref(), json: *json, out: path.as_deref() };
+            shift::run(&open(file)?, &wish, out)
         }
     }
 }

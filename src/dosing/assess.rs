@@ -96,6 +96,8 @@ pub(super) struct WorstPlaces {
     pub excess: f64,
     pub sure: Place,
     pub excess_95: f64,
+    /// Whether the surest place is where a solid comes or goes.
+    pub at_edge: bool,
 }
 
 impl<'a> Assessor<'a> {
@@ -177,34 +179,42 @@ impl<'a> Assessor<'a> {
             .worst
             .iter()
             .take(values.len())
-            .map(|&(plain, excess)| WorstPlaces { plain, excess, sure: plain, excess_95: f64::NEG_INFINITY })
+            .map(|&(plain, excess)| WorstPlaces {
+                plain,
+                excess,
+                sure: plain,
+                excess_95: f64::NEG_INFINITY,
+                at_edge: false,
+            })
             .collect();
         // Each place is solved once for all the walls that it is near the worst of.
-        let mut asked: Vec<(Place, Vec<(usize, f64)>)> = Vec::new();
+        let mut asked: Vec<(Place, bool, Vec<(usize, f64)>)> = Vec::new();
         for (wall, worst) in found.iter().enumerate() {
-            let mut near: Vec<(Place, f64)> = match worst.excess > FAR {
-                true => {
-                    survey.of(wall).filter(|(_, score)| *score > worst.excess - CONFIDENCE_REACH).collect()
-                }
-                false => Vec::new(),
-            };
+            let reach = worst.excess - CONFIDENCE_REACH;
+            let asked_for = |(_, score): &(Place, f64)| worst.excess > FAR && *score > reach;
+            let mut near: Vec<(Place, f64)> = survey.of(wall).filter(asked_for).collect();
             near.sort_by(|a, b| b.1.total_cmp(&a.1));
             near.truncate(CONFIDENCE_PLACES);
-            for (place, score) in std::iter::once((worst.plain, worst.excess)).chain(near) {
-                match asked.iter_mut().find(|(known, _)| *known == place) {
-                    Some((_, walls)) => walls.push((wall, score)),
-                    None => asked.push((place, vec![(wall, score)])),
+            let inner = std::iter::once((worst.plain, worst.excess)).chain(near);
+            let edges = survey.edges_of(wall).filter(asked_for);
+            for ((place, score), at_edge) in inner.map(|p| (p, false)).chain(edges.map(|p| (p, true))) {
+                match asked.iter_mut().find(|(known, ..)| *known == place) {
+                    Some((_, known_edge, walls)) => {
+                        *known_edge |= at_edge;
+                        walls.push((wall, score));
+                    }
+                    None => asked.push((place, at_edge, vec![(wall, score)])),
                 }
             }
         }
-        for (place, walls) in asked {
+        for (place, at_edge, walls) in asked {
             let wanted: Vec<Value> = walls.iter().map(|(wall, _)| values[*wall]).collect();
             let sigmas = self.places.sigmas(dosed, &place, &wanted)?;
             for ((wall, score), sigma) in walls.into_iter().zip(sigmas) {
                 let excess_95 = if score.is_finite() { score + CONFIDENCE_95 * sigma } else { score };
                 let worst = &mut found[wall];
                 if excess_95 > worst.excess_95 {
-                    (worst.sure, worst.excess_95) = (place, excess_95);
+                    (worst.sure, worst.excess_95, worst.at_edge) = (place, excess_95, at_edge);
                 }
             }
         }

@@ -13,6 +13,8 @@ const SAMPLES: usize = 32;
 const HALVINGS: usize = 6;
 /// Width of a crossing as a share of the largest dose.
 const WIDTH: f64 = 1e-7;
+/// Doses closer than this share of the largest dose count as the same: less than the two sides of a crossing are apart.
+const SAME: f64 = 1e-10;
 /// How many times its last fall the excess can fall between two samples.
 const DIP_DEPTH: f64 = 2.0;
 /// Width of samples around a dip, as a share of the largest dose, that are close enough.
@@ -38,7 +40,7 @@ pub(super) struct Curve<'a, 'b> {
 impl<'a, 'b> Curve<'a, 'b> {
     pub fn new(bath: &'a Bath, agent: usize, assessor: &'b mut Assessor<'a>) -> Self {
         Self {
-            judge: Judge::new(bath, assessor, 2.0 * WIDTH),
+            judge: Judge::new(bath, assessor, SAME),
             doses: bath.doses(),
             min: bath.project.agents[agent].min_g_l,
             max: bath.agents[agent].max_g_l,
@@ -75,9 +77,15 @@ impl<'a, 'b> Curve<'a, 'b> {
     /// anew at it.
     pub fn learn_from_bands(&mut self) -> Result<bool, EquilibriumError> {
         let mut gained = false;
-        for band in self.bands().iter().filter(|band| band.hold != Hold::Not) {
+        let bands = self.bands();
+        let hold = |at: Option<usize>| at.and_then(|at| bands.get(at)).map_or(Hold::Not, |band| band.hold);
+        for (number, band) in bands.iter().enumerate().filter(|(_, band)| band.hold != Hold::Not) {
+            // Where a band passes into a better one, the end of the better one is what counts.
+            let (before, after) = (hold(number.checked_sub(1)), hold(Some(number + 1)));
+            let from = (before < band.hold).then_some(band.from);
+            let to = (after < band.hold).then_some(band.to);
             let middle = (band.hold == Hold::Sure).then_some(0.5 * (band.from + band.to));
-            for dose in [band.from, band.to].into_iter().chain(middle) {
+            for dose in [from, to, middle].into_iter().flatten() {
                 gained |= self.learn(dose)?;
             }
         }

@@ -29,8 +29,8 @@ pub(super) struct Sample {
     /// Only worked out where the plain numbers hold; elsewhere the plain excess.
     pub sure: f64,
     pub dosed: Corrected,
-    /// Places judged so far.
-    judged: usize,
+    /// Places and lines judged so far.
+    judged: (usize, usize),
 }
 
 impl Sample {
@@ -53,6 +53,8 @@ pub(super) struct Judge<'a, 'b> {
     pub assessor: &'b mut Assessor<'a>,
     pub objectives: Vec<Objective>,
     pub places: Vec<Place>,
+    /// Places along whose pH a solid comes or goes at another pH for every dose.
+    lines: Vec<Place>,
     /// Doses whose worst places are known.
     learned: Vec<Vec<f64>>,
     /// Doses closer than this share of their caps count as the same.
@@ -65,6 +67,7 @@ impl<'a, 'b> Judge<'a, 'b> {
         Self {
             objectives: assessor.walls.iter().map(|wall| Objective::Wall(*wall)).collect(),
             places: vec![assessor.places.set()],
+            lines: Vec::new(),
             learned: Vec::new(),
             scores: Vec::new(),
             bath,
@@ -92,7 +95,12 @@ impl<'a, 'b> Judge<'a, 'b> {
             let is_new = wall.excess > sample.plain + WORSE || wall.excess_95 > sample.sure + WORSE;
             gained |= is_new;
             if is_new || (self.learned.len() <= GENEROUS && wall.excess_95 > nearest - BEHIND) {
-                for place in [wall.plain, wall.sure] {
+                let line = Place { ph: None, ..wall.sure };
+                if wall.at_edge && !self.lines.contains(&line) {
+                    self.lines.push(line);
+                }
+                let sure = (!wall.at_edge).then_some(wall.sure);
+                for place in std::iter::once(wall.plain).chain(sure) {
                     if !self.places.contains(&place) {
                         self.places.push(place);
                         self.assessor.places.seat(place);
@@ -106,27 +114,40 @@ impl<'a, 'b> Judge<'a, 'b> {
     /// Judges a set of doses at all places.
     pub fn take(&mut self, doses: &[f64]) -> Result<Sample, EquilibriumError> {
         let dosed = self.assessor.places.dose(doses)?;
-        let mut sample = Sample { plain: f64::NEG_INFINITY, sure: f64::NEG_INFINITY, dosed, judged: 0 };
+        let mut sample = Sample { plain: f64::NEG_INFINITY, sure: f64::NEG_INFINITY, dosed, judged: (0, 0) };
         self.judge(&mut sample)?;
         Ok(sample)
     }
 
+    /// All places at which a sample is judged, those included that move with the dose.
+    pub fn places_for(&mut self, sample: &Sample) -> Result<Vec<Place>, EquilibriumError> {
+        let mut places = self.places.clone();
+        for line in &self.lines {
+            places.extend(self.assessor.places.edges_along(&sample.dosed, line)?);
+        }
+        Ok(places)
+    }
+
     /// Judges a sample at the places that were added since.
     pub fn judge(&mut self, sample: &mut Sample) -> Result<(), EquilibriumError> {
-        let walls = self.objectives.len();
-        let first = sample.judged;
+        let (first, first_line) = sample.judged;
+        sample.judged = (self.places.len(), self.lines.len());
+        let mut places = self.places[first..].to_vec();
+        for line in &self.lines[first_line..] {
+            places.extend(self.assessor.places.edges_along(&sample.dosed, line)?);
+        }
         self.scores.clear();
-        for place in &self.places[first..] {
+        for place in &places {
             self.assessor.places.score(&sample.dosed, place, &self.objectives, &mut self.scores)?;
         }
         let highest = self.scores.iter().copied().fold(f64::NEG_INFINITY, f64::max);
         sample.plain = sample.plain.max(highest);
-        sample.judged = self.places.len();
         if sample.plain - TOUCH > 0.0 {
             sample.sure = sample.plain;
             return Ok(());
         }
-        for (scores, place) in self.scores.chunks_exact(walls).zip(&self.places[first..]) {
+        let walls = self.objectives.len();
+        for (scores, place) in self.scores.chunks_exact(walls).zip(&places) {
             let near = |score: &f64| *score > sample.plain - CONFIDENCE_REACH && score.is_finite();
             let near: Vec<usize> = (0..walls).filter(|wall| near(&scores[*wall])).collect();
             if near.is_empty() {

@@ -14,6 +14,8 @@ const PH_SAMPLES: usize = 7;
 const ROUNDS: usize = 4;
 /// Gain (log10) that is worth another round.
 const GAIN: f64 = 1e-9;
+/// Halvings that enclose the pH at which a solid comes: a seventh of the range to within a meter's last digit.
+const EDGE_STEPS: usize = 10;
 /// What lies this far (log10) under its wall is not refined: nobody asks for its third digit.
 pub(super) const FAR: f64 = -2.0;
 
@@ -44,13 +46,23 @@ pub(super) struct Survey {
     pub scores: Vec<f64>,
     /// Worst place of each objective with its score.
     pub worst: Vec<(Place, f64)>,
+    /// Numbers of the places where a solid is about to come or has just gone.
+    pub edges: Vec<usize>,
 }
 
 impl Survey {
     /// Places and scores of one objective.
     pub fn of(&self, objective: usize) -> impl Iterator<Item = (Place, f64)> + '_ {
-        let stride = self.worst.len();
-        self.places.iter().enumerate().map(move |(i, place)| (*place, self.scores[i * stride + objective]))
+        (0..self.places.len()).map(move |i| (self.places[i], self.score(i, objective)))
+    }
+
+    /// Places and scores of one objective where a solid comes or goes.
+    pub fn edges_of(&self, objective: usize) -> impl Iterator<Item = (Place, f64)> + '_ {
+        self.edges.iter().map(move |&i| (self.places[i], self.score(i, objective)))
+    }
+
+    fn score(&self, place: usize, objective: usize) -> f64 {
+        self.scores[place * self.worst.len() + objective]
     }
 }
 
@@ -201,10 +213,20 @@ impl<'a> Places<'a> {
         let sides = self.worst_sides(dosed, objectives)?;
         for position in sides {
             for level in 0..self.scanned_levels {
+                let mut last: Option<(Place, Vec<bool>)> = None;
                 for at in 0..self.ph.len() {
                     let place = Place { temperature_c: self.levels[level].0, ph: self.ph[at], position };
                     self.score(dosed, &place, objectives, &mut survey.scores)?;
                     survey.places.push(place);
+                    let present = self.present();
+                    if let Some((before, solids)) = last.filter(|(_, solids)| *solids != present) {
+                        for edge in self.edge(dosed, (before, &solids), place)?.into_iter().flatten() {
+                            survey.edges.push(survey.places.len());
+                            self.score(dosed, &edge, objectives, &mut survey.scores)?;
+                            survey.places.push(edge);
+                        }
+                    }
+                    last = Some((place, present));
                 }
             }
         }
@@ -220,6 +242,47 @@ impl<'a> Places<'a> {
             survey.worst.push(refined);
         }
         Ok(survey)
+    }
+
+    /// Which solids the last solution holds.
+    fn present(&self) -> Vec<bool> {
+        self.solution.solids.iter().map(|amount| *amount > 0.0).collect()
+    }
+
+    /// Both sides of the pH between two places at which the first solid comes or goes: uncertainty jumps there, and free
+    /// metal has its kinks there.
+    fn edge(
+        &mut self,
+        dosed: &Corrected,
+        (before, solids): (Place, &[bool]),
+        after: Place,
+    ) -> Result<Option<[Place; 2]>, EquilibriumError> {
+        let (Some(mut low), Some(mut high)) = (before.ph, after.ph) else { return Ok(None) };
+        for _ in 0..EDGE_STEPS {
+            let middle = 0.5 * (low + high);
+            self.solve(dosed, &Place { ph: Some(middle), ..before })?;
+            *(if self.present() == solids { &mut low } else { &mut high }) = middle;
+        }
+        Ok(Some([low, high].map(|ph| Place { ph: Some(ph), ..before })))
+    }
+
+    /// Where solids come and go along the pH range at the temperature and the drifts of a place.
+    ///
+    /// # Errors
+    /// [`EquilibriumError`] for an ill-posed bath.
+    pub fn edges_along(&mut self, dosed: &Corrected, line: &Place) -> Result<Vec<Place>, EquilibriumError> {
+        let mut edges = Vec::new();
+        let mut last: Option<(Place, Vec<bool>)> = None;
+        for at in 0..self.ph.len() {
+            let place = Place { ph: self.ph[at], ..*line };
+            self.solve(dosed, &place)?;
+            let present = self.present();
+            if let Some((before, solids)) = last.filter(|(_, solids)| *solids != present) {
+                edges.extend(self.edge(dosed, (before, &solids), place)?.into_iter().flatten());
+            }
+            last = Some((place, present));
+        }
+        Ok(edges)
     }
 
     /// The set point of the drifts, and the sides that each objective fears, each once.

@@ -64,7 +64,7 @@ fn at(values: &[f64], index: usize) -> f64 {
 }
 
 /// A number with [`FIGURES`] figures; empty when there is none.
-fn number(value: f64) -> String {
+pub(super) fn number(value: f64) -> String {
     let scientific = format!("{value:.*e}", FIGURES - 1);
     match scientific.parse::<f64>() {
         Ok(0.0) => "0".to_owned(),

@@ -1,5 +1,5 @@
 //! Pictures and stories of a bath: distribution of metals and agents over pH or dose, free metal over both, rinse water
-//! and its treatment, two agents side by side.
+//! and its treatment, two agents side by side, the shift forecast.
 
 pub mod compare;
 mod contour;
@@ -8,6 +8,7 @@ mod diagram;
 mod labels;
 mod map;
 pub mod rinse;
+pub mod shift;
 mod svg;
 
 pub use csv::{map_to_csv, to_csv};

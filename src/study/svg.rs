@@ -12,6 +12,7 @@ mod paper;
 #[cfg(test)]
 pub(super) mod sample;
 mod shares;
+pub(super) mod shift;
 mod strip;
 
 pub use chart::map_to_svg;

@@ -43,7 +43,7 @@ pub(super) fn constraints(
     }
     let mut found = Vec::new();
     let mut scores = Vec::new();
-    for place in judge.places.clone() {
+    for place in judge.places_for(&sample)? {
         scores.clear();
         judge.assessor.places.score(&sample.dosed, &place, &judge.objectives, &mut scores)?;
         let near: Vec<usize> = (0..scores.len()).filter(|&wall| scores[wall] > sample.plain - NEAR).collect();

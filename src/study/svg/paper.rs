@@ -152,6 +152,16 @@ impl Paper {
         ));
     }
 
+    /// A closed path filled so that what is behind shows through.
+    pub fn tint(&mut self, d: &str, fill: &str, opacity: f64) {
+        self.0.push_str(&format!("<path d=\"{d}\" fill=\"{fill}\" fill-opacity=\"{opacity}\"/>\n"));
+    }
+
+    /// A small triangle that points down to a place.
+    pub fn arrow_down(&mut self, (x, y): (f64, f64), fill: &str) {
+        self.0.push_str(&format!("<path d=\"M{x:.1} {y:.1} l-6 -11 h12 Z\" fill=\"{fill}\"/>\n"));
+    }
+
     /// A dot on a line.
     pub fn dot(&mut self, (x, y): (f64, f64), fill: &str) {
         self.0.push_str(&format!(
