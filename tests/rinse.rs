@@ -1,9 +1,9 @@
 //! Rinse water and its treatment: balances by another route, limiting cases by hand, published facts.
 
 use bathwright::bath::{
-    Bath, Content, DEMOS, Demo, FreshWater, PermitLimit, Ph, PhSpan, Project, Range, Rinse,
+    Arrangement, Bath, Content, DEMOS, Demo, FreshWater, PermitLimit, Ph, PhSpan, Project, Range,
 };
-use bathwright::bath::{SheetDetails, Trust};
+use bathwright::bath::{Rinse, SheetDetails, Trust};
 use bathwright::equilibrium::{ActivityModel, log10_kw};
 use bathwright::quantity::{Amount, Unit};
 use bathwright::study::rinse::{
@@ -334,4 +334,73 @@ fn a_bad_rinse_section_is_refused_with_field_value_and_fix() {
         assert_eq!(output.status.code(), Some(2), "{error}");
         assert!(error.contains(needle) && error.lines().count() == 1, "{error}");
     }
+}
+
+/// Numbers that look random and are the same in every run.
+struct Lcg(u64);
+
+impl Lcg {
+    fn between(&mut self, low: f64, high: f64) -> f64 {
+        self.0 = self.0.wrapping_mul(6_364_136_223_846_793_005).wrapping_add(1_442_695_040_888_963_407);
+        low + (high - low) * ((self.0 >> 11) as f64 / (1u64 << 53) as f64)
+    }
+}
+
+#[test]
+fn any_rinse_behind_any_demo_bath_has_an_answer_that_closes() {
+    let mut random = Lcg(7);
+    for round in 0..30 {
+        let demo = &DEMOS[round % DEMOS.len()];
+        let mut project = demo.project().unwrap();
+        let low = random.between(4.0, 10.0);
+        let hardness = |value: f64| Amount::new(value, Unit::MillimolePerLitre);
+        project.activity = [ActivityModel::Davies, ActivityModel::IonInteraction][round % 2];
+        project.rinse = Rinse {
+            drag_out_l_h: random.between(0.1, 40.0),
+            flow_l_h: random.between(1.0, 3000.0),
+            stages: random.between(1.0, 5.0) as u32,
+            arrangement: if round % 3 == 0 { Arrangement::Separate } else { Arrangement::Counterflow },
+            water: FreshWater {
+                calcium: hardness(random.between(0.0, 4.0)),
+                magnesium: hardness(random.between(0.0, 2.0)),
+                hydrogen_carbonate: (round % 4 == 0).then(|| hardness(random.between(0.0, 8.0))),
+                ph: random.between(6.0, 9.0),
+            },
+            temperature_c: random.between(5.0, 40.0),
+            alkali: if round % 5 == 0 { "naoh-50".into() } else { "lime-hydrated".into() },
+            treatment_ph: PhSpan { low, high: low + random.between(0.0, 3.0) },
+            ..Rinse::default()
+        };
+        let bath = Bath::resolve(&project).unwrap();
+        let doses: Vec<f64> =
+            bath.agents.iter().map(|agent| random.between(0.0, 0.5 * agent.max_g_l)).collect();
+        let mut study = rinse(&bath, &doses).unwrap_or_else(|error| panic!("{}: {error}", demo.file));
+        let broken = study.breaking.iter().flat_map(|breaking| breaking.by_ph.iter().flatten());
+        let treated: Vec<_> = study
+            .scan
+            .iter()
+            .filter_map(|point| point.with_agents.clone())
+            .chain(broken.map(|broken| broken.treated.clone()))
+            .collect();
+        for treated in treated {
+            assert!(treated.solution.certificate.holds(), "{} round {round}", demo.file);
+            let alone = study.water.solve(&treated.totals, None).unwrap().ph(study.water.proton);
+            assert!(
+                (alone - treated.ph).abs() < 1e-3,
+                "{} round {round}: {alone}, {}",
+                demo.file,
+                treated.ph
+            );
+        }
+    }
+}
+
+/// The example chemistry of the README has one invented metal without a formula: nothing to compare, and no failure.
+#[test]
+fn a_chemistry_of_ones_own_goes_through() {
+    let readme = include_str!("../README.md");
+    let text = readme.split("```ron").nth(1).and_then(|rest| rest.split("```").next()).unwrap();
+    let bath = Bath::resolve(&bathwright::bath::read(text, "README.md").unwrap()).unwrap();
+    let study = rinse(&bath, &bath.doses()).unwrap();
+    assert!(study.watched.is_empty() && study.breaking.is_empty() && study.stages.len() == 2);
 }

@@ -5,14 +5,16 @@ mod text;
 
 use super::{CommandError, Outcome, print};
 use crate::bath::{Bath, BathError};
-use crate::dosing::search;
+use crate::dosing::{Hold, search};
 use crate::study::rinse::{Treated, rinse};
 use std::io::Write;
 
 /// Doses to study: those of the project, or with a named agent the smallest dose of it that holds.
-fn doses(bath: &Bath, name: Option<&str>) -> Result<(Bath, Vec<f64>), CommandError> {
+///
+/// With them a remark where that dose holds by plain numbers only.
+fn doses(bath: &Bath, name: Option<&str>) -> Result<(Bath, Vec<f64>, &'static str), CommandError> {
     if name.is_none() {
-        return Ok((bath.clone(), bath.doses()));
+        return Ok((bath.clone(), bath.doses(), ""));
     }
     let (mut bath, agent) = super::choose_agent(bath, name)?;
     let found = search(&bath, agent)?.found.ok_or_else(|| {
@@ -23,7 +25,8 @@ fn doses(bath: &Bath, name: Option<&str>) -> Result<(Bath, Vec<f64>), CommandErr
     })?;
     bath.project.agents[agent].dose_g_l = found.dose_g_l;
     let doses = bath.doses();
-    Ok((bath, doses))
+    let remark = if found.hold == Hold::Plain { "Note: the dose holds by plain numbers only.\n" } else { "" };
+    Ok((bath, doses, remark))
 }
 
 pub fn run(
@@ -33,13 +36,13 @@ pub fn run(
     path: &str,
     out: &mut dyn Write,
 ) -> Result<Outcome, CommandError> {
-    let (bath, doses) = doses(bath, name)?;
+    let (bath, doses, remark) = doses(bath, name)?;
     let bad = |source: BathError| CommandError::Bath { path: path.to_owned(), source };
     let study = rinse(&bath, &doses).map_err(bad)?;
     let text = if as_json {
         format!("{:#}\n", json::object(&bath, &doses, &study))
     } else {
-        text::text(&bath, &doses, &study)
+        remark.to_owned() + &text::text(&bath, &doses, &study)
     };
     print(out, &text)?;
     Ok(Outcome::Done)

@@ -12,7 +12,9 @@ mod treat;
 mod water;
 
 pub use breaking::{AcidStep, Breaking, Broken, METHODS, Method};
-pub use dissolved::{AppliedLimit, Watched, dissolved_mol_l, holders, sigma_log10 as dissolved_sigma};
+pub use dissolved::{
+    AppliedLimit, Watched, dissolved_mol_l, holders, sigma_log10 as dissolved_sigma, watched as watched_in,
+};
 pub use stages::{shares, waste_share};
 pub use treat::{Poured, Treated, to_ph};
 pub use water::RinseWater;
@@ -161,9 +163,8 @@ pub fn rinse(bath: &Bath, doses: &[f64]) -> Result<RinseStudy, BathError> {
     }
     let at_best = best.and_then(|best| scan[best].with_agents.as_ref());
     let rests_on = at_best.map_or_else(Vec::new, |treated| rests_on(&water, &treated.solution));
-    let flags = at_best.map_or_else(Vec::new, |treated| {
-        flags(&water.bath, &treated.solution, line.temperature_c).into_iter().collect()
-    });
+    let flags =
+        at_best.map_or_else(Vec::new, |treated| flags(&water.bath, &treated.solution, line.temperature_c));
     Ok(RinseStudy {
         assumed: line.is_default(),
         agents: agents_leaving(&water, &waste, line.flow_l_h * line.hours_per_day),
@@ -180,14 +181,6 @@ pub fn rinse(bath: &Bath, doses: &[f64]) -> Result<RinseStudy, BathError> {
         rests_on,
         flags,
     })
-}
-
-/// The metals that a bath brings, with their limits.
-///
-/// # Errors
-/// [`BathError::Unknown`] for a regime or a permit metal that does not exist.
-pub fn watched_in(bath: &Bath, water: &RinseWater) -> Result<Vec<Watched>, BathError> {
-    dissolved::watched(bath, water)
 }
 
 /// Dry mass of the solids in a treated water, g/L; what comes from the filter press holds several times as much water.
