@@ -46,6 +46,48 @@ fn potential(bath: &Bath, solution: &Equilibrium, metal: usize) -> Option<f64> {
     solution.ln_a[metal].is_finite().then(|| nernst(couple, solution.ln_a[metal], temperature))
 }
 
+/// Potential of a metal in this bath against each reference electrode that stands on a salt bridge at room temperature, V.
+fn against_references<'a>(
+    bath: &'a Bath,
+    solution: &'a Equilibrium,
+    metal: usize,
+) -> impl Iterator<Item = (&'static str, f64)> + 'a {
+    let references = Potentials::built_in().references.iter();
+    let potential = potential(bath, solution, metal);
+    references.filter_map(move |reference| Some((reference.name.as_str(), potential? - reference.e_v)))
+}
+
+/// The potentials of all metals, where any is known.
+fn potentials_table(bath: &Bath, solution: &Equilibrium) -> String {
+    let references = &Potentials::built_in().references;
+    let known: Vec<(usize, f64)> =
+        bath.metals().filter_map(|metal| Some((metal, potential(bath, solution, metal)?))).collect();
+    if known.is_empty() {
+        return String::new();
+    }
+    let mut text = "\nPotential of each metal in this bath, V, against\n".to_owned();
+    for (number, chunk) in known.chunks(METALS_IN_A_ROW).enumerate() {
+        let name =
+            |i: usize| chunk.get(i).map_or(String::new(), |(m, _)| pretty(&bath.system.components[*m]));
+        let names: [String; METALS_IN_A_ROW] = std::array::from_fn(name);
+        let head: Vec<&str> = std::iter::once("electrode").chain(names.iter().map(String::as_str)).collect();
+        let mut table = Table::new(&head);
+        let electrodes = std::iter::once(("standard hydrogen", 0.0))
+            .chain(references.iter().map(|reference| (reference.name.as_str(), reference.e_v)));
+        for (electrode, e_v) in electrodes {
+            let cell = |i: usize| chunk.get(i).map_or(String::new(), |(_, e)| fixed(e - e_v, 3));
+            let [a, b, c, d] = std::array::from_fn(cell);
+            table.row([electrode.to_owned(), a, b, c, d]);
+        }
+        text += if number > 0 { "\n" } else { "" };
+        text += &table.text();
+    }
+    text + "  Reference electrodes on a salt bridge at 25 °C.\n"
+}
+
+/// Metals beside each other in the table of potentials.
+const METALS_IN_A_ROW: usize = 4;
+
 /// Rule of a solid in words.
 fn rule_word(rule: Rule) -> &'static str {
     match rule {
@@ -65,6 +107,9 @@ pub fn json_object(bath: &Bath, solution: &Equilibrium, doses: &[f64]) -> Map<St
             "mol_per_L": finite(value),
             "pM": finite(-solution.ln_c[metal] / crate::equilibrium::LN_10),
             "E_SHE_V": potential(bath, solution, metal).map_or(Value::Null, finite),
+            "E_V": against_references(bath, solution, metal)
+                .map(|(name, e)| (name.to_owned(), finite(e)))
+                .collect::<Map<String, Value>>(),
         });
         free.insert(bath.system.components[metal].clone(), entry);
     }
@@ -128,25 +173,17 @@ pub fn json_object(bath: &Bath, solution: &Equilibrium, doses: &[f64]) -> Map<St
 fn text(bath: &Bath, solution: &Equilibrium, doses: &[f64]) -> String {
     let mut text = heading(bath, solution, doses);
     text += "\nFree metals\n";
-    let mut table = Table::new(&["metal", "mol/L", "pM", "mg/L", "E of the metal, V (SHE)", "V (Ag/AgCl)"]);
+    let mut table = Table::new(&["metal", "mol/L", "pM", "mg/L"]);
     for metal in bath.metals().filter(|&metal| solution.free(metal) > 0.0) {
         let value = solution.free(metal);
         let mg = bath
             .component(metal)
             .molar_mass()
             .map_or("–".to_owned(), |mass| significant(value * mass * 1e3, 2));
-        let potential = potential(bath, solution, metal);
-        let against = |reference: f64| potential.map_or("–".to_owned(), |e| fixed(e - reference, 2));
-        table.row([
-            pretty(&bath.system.components[metal]),
-            significant(value, 2),
-            p_value(value),
-            mg,
-            against(0.0),
-            against(Potentials::built_in().references.first().map_or(0.0, |reference| reference.e_v)),
-        ]);
+        table.row([pretty(&bath.system.components[metal]), significant(value, 2), p_value(value), mg]);
     }
     text += &table.text();
+    text += &potentials_table(bath, solution);
     text += "\nSpecies, largest first\n";
     let mut order: Vec<usize> = (0..solution.c.len()).filter(|&j| solution.c[j] > 0.0).collect();
     order.sort_by(|&a, &b| solution.c[b].total_cmp(&solution.c[a]));
