@@ -13,6 +13,8 @@ use std::io::Write;
 
 /// Inputs printed with their share of the variance at most.
 const RANKED: usize = 5;
+/// A dose for a perfect analysis is worth saying when it is under this share of the one found.
+const WORTH_SAYING: f64 = 0.98;
 
 pub fn run(
     bath: &Bath,
@@ -59,9 +61,11 @@ fn text(correction: &Correction) -> Result<String, CommandError> {
         text += &format!("\n{}\n", ph_sentence(ph));
     }
     for metal in &correction.metals {
-        let name = &bath.component(bath.limits[metal.limit].component).name;
+        let component = bath.component(bath.limits[metal.limit].component);
         text += &format!(
-            "Free {name}: p {} ± {} (constants {}, analysis and recipe {}).\n",
+            "Free {}: p{} {} ± {} (constants {}, analysis and recipe {}).\n",
+            component.name,
+            component.short(),
             p_value(metal.free),
             fixed(metal.spread.total(), 2),
             fixed(metal.spread.constants, 2),
@@ -147,7 +151,9 @@ fn remedy_text(correction: &Correction) -> Result<String, CommandError> {
                 kilograms(dose_g_l * bath.project.tank.volume_l / 1000.0),
                 hold_words(*hold),
             );
-            if let Some(found) = search.found.as_ref().filter(|found| found.dose_g_l < *dose_g_l) {
+            if let Some(found) =
+                search.found.as_ref().filter(|found| found.dose_g_l < WORTH_SAYING * dose_g_l)
+            {
                 text +=
                     &format!("With a perfect analysis {} g/L would do.\n", significant(found.dose_g_l, 3));
             }
@@ -174,12 +180,12 @@ fn bail_out_text(bath: &Bath, found: &BailOut) -> String {
     let hold = hold_words(found.hold);
     match found.dose {
         None => format!(
-            "No dose holds. Bail out {} ({} L) and refill with {refill}: it then holds {hold}.\n",
+            "No dose holds. Bail out {} ({} L) and refill with {refill} and bring the pH back: it then holds {hold}.\n",
             percent(found.share),
             grouped(litres.ceil(), 0),
         ),
         Some((agent, dose)) => format!(
-            "No dose and no bail-out alone holds. Bail out {} ({} L), refill with {refill}, then add {} g/L of {} ({}): it then holds {hold}.\n",
+            "No dose and no bail-out alone holds. Bail out {} ({} L), refill with {refill}, bring the pH back, then add {} g/L of {} ({}): it then holds {hold}.\n",
             percent(found.share),
             grouped(litres.ceil(), 0),
             significant(dose, 3),

@@ -2,6 +2,9 @@
 //! holds; with a dose afterwards where that alone can't do it.
 
 use super::CorrectionError;
+use super::input::{Effect, Input};
+use super::remedy::surely;
+use super::window::Window;
 use crate::bath::{AgentDose, Bath, Content, Project};
 use crate::dosing::{Assessor, Hold, search};
 
@@ -25,16 +28,17 @@ pub struct BailOut {
     pub project: Project,
     /// Number of the agent and g/L of its product, where refilling alone can't do it.
     pub dose: Option<(usize, f64)>,
-    /// How well it holds.
+    /// How well it holds, with the uncertainty of the inputs counted; the refill counts as exact.
     pub hold: Hold,
 }
 
 /// Largest share that still is a correction and not a new bath.
 pub const MOST: f64 = 0.95;
-/// Shares tried before the crossing is refined, alone and with a dose; and the width of the crossing.
+/// Shares tried before the crossing is refined, alone and with a dose; and the widths of the crossings.
 const SAMPLES: usize = 38;
 const SAMPLES_WITH_DOSE: usize = 19;
 const WIDTH: f64 = 1e-4;
+const WIDTH_WITH_DOSE: f64 = 1e-3;
 /// Steps of the search for the lowest point between two shares.
 const DIP_STEPS: usize = 16;
 
@@ -72,16 +76,50 @@ pub fn refilled(bath: &Bath, refill: Refill, share: f64) -> Result<Project, Corr
     Ok(project)
 }
 
+/// The bath after a share was replaced, and what is left of the inputs in it.
+fn after(
+    bath: &Bath,
+    inputs: &[Input],
+    refill: Refill,
+    share: f64,
+) -> Result<(Bath, Vec<Input>), CorrectionError> {
+    let after = Bath::resolve(&refilled(bath, refill, share)?)?;
+    // A fresh bath may bring components that the old one lacked.
+    let place = |component: usize| after.present.iter().position(|present| *present == component);
+    let mut inputs = inputs.to_vec();
+    for input in &mut inputs {
+        let Effect::Totals(moles) = &mut input.effect else { continue };
+        let mut left = vec![0.0; after.present.len()];
+        for (moles, component) in moles.iter().zip(&bath.present) {
+            if let Some(place) = place(*component) {
+                left[place] = (1.0 - share) * moles;
+            }
+        }
+        *moles = left;
+    }
+    Ok((after, inputs))
+}
+
 /// The smallest bail-out that holds without a dose: with 95 % confidence, else by plain numbers.
 ///
 /// # Errors
 /// [`CorrectionError`] for a refill that can't be read or an ill-posed bath.
-pub(super) fn bail_out(bath: &Bath, refill: Refill) -> Result<Option<BailOut>, CorrectionError> {
+pub(super) fn bail_out(
+    bath: &Bath,
+    inputs: &[Input],
+    refill: Refill,
+) -> Result<Option<BailOut>, CorrectionError> {
     for hold in [Hold::Sure, Hold::Plain] {
         let excess = |share: f64| {
-            let after = Bath::resolve(&refilled(bath, refill, share)?)?;
-            let assessment = Assessor::new(&after)?.assess(&after.doses())?;
-            Ok(if hold == Hold::Sure { assessment.excess_95() } else { assessment.excess() })
+            let (after, inputs) = after(bath, inputs, refill, share)?;
+            let doses = after.doses();
+            let assessment = Assessor::new(&after)?.assess(&doses)?;
+            if hold == Hold::Plain {
+                return Ok(assessment.excess());
+            }
+            let positions: Vec<_> = assessment.walls.iter().map(|wall| wall.worst.position).collect();
+            let counted = Window::new(&after, &inputs, &positions)?.excess_95(&doses)?;
+            Ok(assessment.excess_95().max(counted))
         };
         if let Some(share) = smallest(excess)? {
             let project = refilled(bath, refill, share)?;
@@ -97,12 +135,16 @@ pub(super) fn bail_out(bath: &Bath, refill: Refill) -> Result<Option<BailOut>, C
 /// [`CorrectionError`] for a refill that can't be read or an ill-posed bath.
 pub(super) fn bail_out_with_dose(
     bath: &Bath,
+    inputs: &[Input],
     refill: Refill,
     agent: usize,
 ) -> Result<Option<BailOut>, CorrectionError> {
     let at = |share: f64| -> Result<Option<(f64, Hold)>, CorrectionError> {
-        let after = Bath::resolve(&refilled(bath, refill, share)?)?;
-        Ok(search(&after, agent)?.found.map(|found| (found.dose_g_l, found.hold)))
+        let (after, inputs) = after(bath, inputs, refill, share)?;
+        let search = search(&after, agent)?;
+        let Some(found) = &search.found else { return Ok(None) };
+        let mut window = Window::new(&after, &inputs, &[])?;
+        surely(&after, agent, &search, found.dose_g_l, &mut window).map(Some)
     };
     let step = MOST / SAMPLES_WITH_DOSE as f64;
     let mut tried = Vec::new();
@@ -116,21 +158,21 @@ pub(super) fn bail_out_with_dose(
     for wanted in [Hold::Sure, Hold::Plain] {
         let reaches = |found: &Option<(f64, Hold)>| found.is_some_and(|(_, hold)| hold >= wanted);
         let Some(first) = tried.iter().position(reaches) else { continue };
-        let (mut low, mut high) = (step * first.saturating_sub(1) as f64, step * first as f64);
+        let (mut fails, mut holds) = (step * first.saturating_sub(1) as f64, step * first as f64);
         let mut best = tried[first];
-        while high - low > 10.0 * WIDTH {
-            let middle = 0.5 * (low + high);
+        while holds - fails > WIDTH_WITH_DOSE {
+            let middle = 0.5 * (fails + holds);
             let found = at(middle)?;
             if reaches(&found) {
-                (high, best) = (middle, found);
+                (holds, best) = (middle, found);
             } else {
-                low = middle;
+                fails = middle;
             }
         }
         let Some((dose, hold)) = best else { continue };
-        let mut project = refilled(bath, refill, high)?;
+        let mut project = refilled(bath, refill, holds)?;
         project.agents[agent] = AgentDose { dose_g_l: dose, ..project.agents[agent].clone() };
-        return Ok(Some(BailOut { refill, share: high, project, dose: Some((agent, dose)), hold }));
+        return Ok(Some(BailOut { refill, share: holds, project, dose: Some((agent, dose)), hold }));
     }
     Ok(None)
 }

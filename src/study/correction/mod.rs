@@ -47,7 +47,8 @@ pub struct FoundMetal {
     pub limit: usize,
     /// Free metal, mol/L, at the pH found and the bath's set temperature.
     pub free: f64,
-    /// Where the uncertainty of its log10 comes from.
+    /// Where the uncertainty of its log10 comes from; to first order, so that a solid which would begin to form within it
+    /// is not seen.
     pub spread: Spread,
 }
 
@@ -143,7 +144,7 @@ pub fn correct(project: &Project, agent: Option<usize>) -> Result<Correction, Co
     let remedy = if plain.excess() <= 0.0 && excess_95 <= 0.0 {
         Remedy::Nothing
     } else {
-        remedy::remedy(&bath, agent, &mut window)?
+        remedy::remedy(&bath, &inputs, agent, &mut window)?
     };
     let rests_on = remedy::rests_on(&bath, &inputs, &walls, &remedy, &mut window)?;
     drop((window, assessor));

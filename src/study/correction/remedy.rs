@@ -13,7 +13,12 @@ const DOSE_SAMPLES: usize = 24;
 const DOSE_HALVINGS: usize = 24;
 
 /// A dose first, then a bail-out, then both.
-pub(super) fn remedy(bath: &Bath, agent: usize, window: &mut Window) -> Result<Remedy, CorrectionError> {
+pub(super) fn remedy(
+    bath: &Bath,
+    inputs: &[Input],
+    agent: usize,
+    window: &mut Window,
+) -> Result<Remedy, CorrectionError> {
     let search = search(bath, agent)?;
     if let Some(found) = &search.found {
         let (dose_g_l, hold) = surely(bath, agent, &search, found.dose_g_l, window)?;
@@ -28,12 +33,12 @@ pub(super) fn remedy(bath: &Bath, agent: usize, window: &mut Window) -> Result<R
         [Refill::Water, Refill::Fresh].into_iter().filter(|refill| fresh || *refill == Refill::Water);
     let mut best: Option<BailOut> = None;
     for refill in refills.clone() {
-        let found = bail_out(bath, refill)?;
+        let found = bail_out(bath, inputs, refill)?;
         keep_better(&mut best, found);
     }
     if best.is_none() {
         for refill in refills {
-            let found = bail_out_with_dose(bath, refill, agent)?;
+            let found = bail_out_with_dose(bath, inputs, refill, agent)?;
             keep_better(&mut best, found);
         }
     }
@@ -55,7 +60,7 @@ fn keep_better(best: &mut Option<BailOut>, found: Option<BailOut>) {
 }
 
 /// The smallest dose from the one found on that holds with the uncertainty of the inputs counted, else the one found.
-fn surely(
+pub(super) fn surely(
     bath: &Bath,
     agent: usize,
     search: &Search,
