@@ -201,6 +201,32 @@ fn refused(from: &str, to: &str, needles: &[&str]) {
 }
 
 #[test]
+fn an_analysis_is_answered_with_an_addition_or_a_bail_out() {
+    let object = json(&run!("correct", &demo("copper_strike.ron"), "--json"));
+    assert_eq!(object["remedy"]["kind"], "add");
+    let kg = object["remedy"]["dose_kg"].as_f64().unwrap();
+    assert!((kg - 1.84 * object["remedy"]["dose_g_per_L"].as_f64().unwrap()).abs() < 1e-9);
+    let (meter, bath) = (object["pH"]["meter"].as_f64().unwrap(), object["pH"]["bath"].as_f64().unwrap());
+    assert!(meter == 9.31 && bath < meter, "{bath}");
+    let inputs = object["inputs"].as_array().unwrap();
+    assert!(inputs.iter().any(|input| input["evidence"] == "assumed" && input["analysed"] == false));
+
+    let nickel = demo("electroless_nickel.ron");
+    let object = json(&run!("correct", &nickel, "--json"));
+    assert_eq!(object["remedy"]["kind"], "bail-out");
+    let output = run!("correct", &nickel);
+    assert_eq!(output.status.code(), Some(0));
+    let printed = text(&output.stdout);
+    for needle in ["Bail out", "measured earlier, analysis", "inferred, recipe", "with the same hydrogen"] {
+        assert!(printed.contains(needle), "{needle}: {printed}");
+    }
+
+    let output = run!("correct", &demo("derusting.ron"));
+    assert_eq!(output.status.code(), Some(2));
+    assert!(text(&output.stderr).contains("analysis is empty"), "{}", text(&output.stderr));
+}
+
+#[test]
 fn bad_numbers_are_refused_with_field_and_fix() {
     refused("volume_l: 1840", "volume_l: -5", &["tank.volume_l", "-5", "more than 0"]);
     refused("volume_l: 1840", "volume_l: NaN", &["tank.volume_l", "NaN"]);

@@ -39,6 +39,17 @@ pub enum Command {
         #[arg(long)]
         json: bool,
     },
+    /// Correct the bath from today's analysis: the addition or bail-out that brings it back.
+    Correct {
+        /// Project file with an analysis.
+        file: PathBuf,
+        /// Product id, name or agent; the bath's first agent without it.
+        #[arg(long)]
+        agent: Option<String>,
+        /// One JSON object instead of tables.
+        #[arg(long)]
+        json: bool,
+    },
     /// Write the dosing sheet for the dose found.
     Sheet {
         /// Project file.

@@ -5,6 +5,8 @@
 mod arguments;
 mod blend;
 mod compare;
+mod correct;
+mod correct_json;
 mod diagram;
 mod dose;
 mod map;
@@ -102,6 +104,7 @@ pub fn run(command: &Command, out: &mut dyn Write) -> Result<Outcome, CommandErr
         Command::Rinse { file, agent, json } => {
             rinse::run(&open(file)?, agent.as_deref(), *json, &file.display().to_string(), out)
         }
+        Command::Correct { file, agent, json } => correct::run(&open(file)?, agent.as_deref(), *json, out),
         Command::Sheet { file, out: path, agent, paper } => {
             sheet::run(&open(file)?, agent.as_deref(), *paper, path, file, out)
         }

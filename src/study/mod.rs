@@ -3,6 +3,7 @@
 
 pub mod compare;
 mod contour;
+pub mod correction;
 mod csv;
 mod diagram;
 mod labels;
