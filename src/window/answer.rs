@@ -1,5 +1,6 @@
 //! What the worker is asked and what it answers.
 
+use super::story::{Told, Wanted};
 use crate::bath::{Adjustment, Bath, BathError, Flag, Project, Solids, flags};
 use crate::chemistry::ComponentKind;
 use crate::dosing::{Assessment, Assessor, LedgerEntry, Search, Verdict, ledger, plan, search, verdict};
@@ -24,6 +25,8 @@ pub struct View {
     pub across: Across,
     /// Token of the metal or agent; the first limited metal when it is not in the bath.
     pub basis: Option<String>,
+    /// What the open page wants to be told.
+    pub wanted: Option<Wanted>,
 }
 
 /// A version of the project to be answered.
@@ -87,6 +90,8 @@ pub enum Answer {
     Quick(Box<Quick>),
     /// The slow part.
     Thorough(Box<Thorough>),
+    /// What a page wanted.
+    Told(Box<Told>),
 }
 
 /// Points of a live diagram.

@@ -4,8 +4,9 @@ use super::answer::{Across, Answer, Quick, Request, Thorough, View};
 use super::command::Command;
 use super::dialogs::{Ask, Pending, Purpose, dialogs};
 use super::document::Document;
+use super::story::{Story, Told, Wanted};
 use super::worker::Worker;
-use super::{bath_page, frame, sheet_page, theme};
+use super::{bath_page, compare_page, frame, rinse_page, sheet_page, shift_page, theme};
 use crate::bath::{BathError, DEMOS, Project};
 use crate::dosing::Hold;
 use crate::sheet::{to_pdf, to_text};
@@ -18,6 +19,12 @@ use std::sync::Arc;
 pub enum Page {
     /// Tank, diagram, doses.
     Bath,
+    /// Two agents side by side.
+    Compare,
+    /// The shifts ahead.
+    Shift,
+    /// The rinse water.
+    Rinse,
     /// The dosing sheet.
     Sheet,
 }
@@ -40,6 +47,8 @@ pub struct App {
     pub(super) quick: Option<Box<Quick>>,
     pub(super) thorough: Option<Box<Thorough>>,
     pub(super) error: Option<BathError>,
+    told: Option<Box<Told>>,
+    compared: [Option<String>; 2],
     pub(super) notice: Option<Notice>,
     pub(super) generation: u64,
     asked: Option<(Project, View)>,
@@ -79,12 +88,14 @@ impl App {
         };
         Self {
             document: Document::new(project, path),
-            view: View { across: Across::Ph, basis: None },
+            view: View { across: Across::Ph, basis: None, wanted: None },
             page: Page::Bath,
             part: bath_page::Part::Doses,
             quick: None,
             thorough: None,
             error: None,
+            told: None,
+            compared: [None, None],
             notice,
             generation: 0,
             asked: None,
@@ -134,8 +145,34 @@ impl App {
         self.ask_before_close
     }
 
+    /// The two products of the comparison: those picked, else the first two agents of the bath.
+    pub(super) fn compared(&self) -> [Option<String>; 2] {
+        let listed = |number: usize| self.project().agents.get(number).map(|agent| agent.product.clone());
+        [0, 1].map(|number| self.compared[number].clone().or_else(|| listed(number)))
+    }
+
+    /// What the open page wants to be told.
+    pub(super) fn wanted(&self) -> Option<Wanted> {
+        match self.page {
+            Page::Bath | Page::Sheet => None,
+            Page::Shift => Some(Wanted::Shift),
+            Page::Rinse => Some(Wanted::Rinse),
+            Page::Compare => match self.compared() {
+                [Some(a), Some(b)] if a != b => Some(Wanted::Comparison(a, b)),
+                _ => None,
+            },
+        }
+    }
+
+    /// The newest story of a kind; that of an older version stays until the new one is there.
+    pub(super) fn story_of(&self, is: impl Fn(&Wanted) -> bool) -> Option<Result<&Story, &BathError>> {
+        let told = self.told.as_ref().filter(|told| is(&told.wanted))?;
+        Some(told.story.as_ref())
+    }
+
     /// Sends the project to the worker when it differs from what was asked last.
     fn ask_if_changed(&mut self) {
+        self.view.wanted = self.wanted();
         let now = (&self.document.project, &self.view);
         if self.asked.as_ref().is_some_and(|(project, view)| (project, view) == now) {
             return;
@@ -172,6 +209,11 @@ impl App {
                         self.thorough.as_ref().is_none_or(|old| thorough.generation >= old.generation);
                     if newer {
                         self.thorough = Some(thorough);
+                    }
+                }
+                Answer::Told(told) => {
+                    if self.told.as_ref().is_none_or(|old| told.generation >= old.generation) {
+                        self.told = Some(told);
                     }
                 }
                 _ => {}
@@ -252,7 +294,14 @@ impl App {
                 None => self.say_bad("add a complexing agent first".to_owned()),
             },
             Command::ShowBath => self.page = Page::Bath,
+            Command::ShowCompare => self.page = Page::Compare,
+            Command::ShowShift => self.page = Page::Shift,
+            Command::ShowRinse => self.page = Page::Rinse,
             Command::ShowSheet => self.page = Page::Sheet,
+            Command::Compare(a, b) => {
+                self.compared = [Some(a), Some(b)];
+                self.page = Page::Compare;
+            }
             Command::SwitchTheme => {
                 let dark = ctx.theme() == Theme::Dark;
                 ctx.set_theme(if dark { Theme::Light } else { Theme::Dark });
@@ -263,7 +312,9 @@ impl App {
     fn replace(&mut self, document: Document) {
         self.document = document;
         self.asked = None;
-        self.view = View { across: Across::Ph, basis: None };
+        self.view = View { across: Across::Ph, basis: None, wanted: None };
+        self.told = None;
+        self.compared = [None, None];
         self.thorough = None;
         self.find = None;
         self.notice = None;
@@ -336,7 +387,7 @@ impl App {
         for command in Command::WITH_SHORTCUT {
             let Some(shortcut) = command.shortcut() else { continue };
             // A text field has its own undo.
-            let in_text = matches!(command, Command::Undo | Command::Redo) && ctx.text_edit_focused();
+            let in_text = matches!(&command, Command::Undo | Command::Redo) && ctx.text_edit_focused();
             if !in_text && ctx.input_mut(|input| input.consume_shortcut(&shortcut)) {
                 self.run(ctx, command);
             }
@@ -377,6 +428,9 @@ impl eframe::App for App {
         frame::status(self, ui);
         match self.page {
             Page::Bath => bath_page::show(self, ui),
+            Page::Compare => compare_page::show(self, ui),
+            Page::Shift => shift_page::show(self, ui),
+            Page::Rinse => rinse_page::show(self, ui),
             Page::Sheet => sheet_page::show(self, ui),
         }
         frame::close_question(self, ui);

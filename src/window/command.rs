@@ -3,7 +3,7 @@
 use eframe::egui::{Key, KeyboardShortcut, Modifiers};
 
 /// Something a person can tell the program to do.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+#[derive(Clone, Debug, PartialEq, Eq)]
 pub enum Command {
     /// An empty bath.
     New,
@@ -27,8 +27,16 @@ pub enum Command {
     FindDose,
     /// The main page.
     ShowBath,
+    /// Two agents side by side.
+    ShowCompare,
+    /// The shifts ahead.
+    ShowShift,
+    /// The rinse water.
+    ShowRinse,
     /// The sheet.
     ShowSheet,
+    /// Two products by id, side by side.
+    Compare(String, String),
     /// The other of light and dark.
     SwitchTheme,
 }
@@ -38,7 +46,7 @@ const COMMAND_SHIFT: Modifiers =
 
 impl Command {
     /// Commands with a shortcut, those with more modifiers first: egui ignores extra ones when it matches.
-    pub const WITH_SHORTCUT: [Command; 11] = [
+    pub const WITH_SHORTCUT: [Command; 14] = [
         Command::SaveAs,
         Command::Redo,
         Command::New,
@@ -49,11 +57,18 @@ impl Command {
         Command::Undo,
         Command::FindDose,
         Command::ShowBath,
+        Command::ShowCompare,
+        Command::ShowShift,
+        Command::ShowRinse,
         Command::ShowSheet,
     ];
 
+    /// Commands that show a page, in the order of the tabs.
+    pub const PAGES: [Command; 5] =
+        [Command::ShowBath, Command::ShowCompare, Command::ShowShift, Command::ShowRinse, Command::ShowSheet];
+
     /// Menu text.
-    pub fn text(self) -> &'static str {
+    pub fn text(&self) -> &'static str {
         match self {
             Command::New => "New bath",
             Command::Open => "Open…",
@@ -66,13 +81,17 @@ impl Command {
             Command::Redo => "Redo",
             Command::FindDose => "Find the dose",
             Command::ShowBath => "Bath and dose",
+            Command::ShowCompare => "Compare",
+            Command::ShowShift => "Shift",
+            Command::ShowRinse => "Rinse",
             Command::ShowSheet => "Sheet",
+            Command::Compare(..) => "Compare two agents",
             Command::SwitchTheme => "Light or dark",
         }
     }
 
     /// What it does, in a sentence.
-    pub fn tip(self) -> &'static str {
+    pub fn tip(&self) -> &'static str {
         match self {
             Command::New => "Start an empty bath",
             Command::Open => "Open a project file",
@@ -87,13 +106,17 @@ impl Command {
                 "Move the slider to the smallest dose that holds every limit over the operating range"
             }
             Command::ShowBath => "The tank, the diagram and the doses",
+            Command::ShowCompare => "Two agents side by side, each at its own smallest dose that holds",
+            Command::ShowShift => "Free metal through the shifts ahead, and the additions that hold it",
+            Command::ShowRinse => "What the rinse water keeps dissolved, and what breaks the complex",
             Command::ShowSheet => "The dosing sheet as it will be printed",
+            Command::Compare(..) => "Put two products side by side",
             Command::SwitchTheme => "Switch between the light and the dark theme",
         }
     }
 
     /// Its shortcut.
-    pub fn shortcut(self) -> Option<KeyboardShortcut> {
+    pub fn shortcut(&self) -> Option<KeyboardShortcut> {
         let command = |key| Some(KeyboardShortcut::new(Modifiers::COMMAND, key));
         match self {
             Command::New => command(Key::N),
@@ -106,8 +129,11 @@ impl Command {
             Command::Redo => Some(KeyboardShortcut::new(COMMAND_SHIFT, Key::Z)),
             Command::FindDose => Some(KeyboardShortcut::new(Modifiers::NONE, Key::F5)),
             Command::ShowBath => command(Key::Num1),
-            Command::ShowSheet => command(Key::Num2),
-            Command::OpenDemo(_) | Command::SwitchTheme => None,
+            Command::ShowCompare => command(Key::Num2),
+            Command::ShowShift => command(Key::Num3),
+            Command::ShowRinse => command(Key::Num4),
+            Command::ShowSheet => command(Key::Num5),
+            Command::OpenDemo(_) | Command::SwitchTheme | Command::Compare(..) => None,
         }
     }
 }

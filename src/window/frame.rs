@@ -50,7 +50,8 @@ pub fn top(app: &mut App, ui: &mut Ui) {
     });
     Panel::top("pages").resizable(false).frame(bar(8)).show(ui, |ui| {
         ui.horizontal(|ui| {
-            for (page, command) in [(Page::Bath, Command::ShowBath), (Page::Sheet, Command::ShowSheet)] {
+            let pages = [Page::Bath, Page::Compare, Page::Shift, Page::Rinse, Page::Sheet];
+            for (page, command) in pages.into_iter().zip(Command::PAGES) {
                 let selected = app.page == page;
                 let text = if selected { Text::Strong } else { Text::Body }.rich(command.text(), p.ink);
                 let tab = Button::new(text)
@@ -88,7 +89,8 @@ fn menus(app: &App, ui: &mut Ui) -> Option<Command> {
     };
     ui.menu_button("File", |ui| {
         for command in [Command::New, Command::Open] {
-            item(ui, command, command.text().to_owned(), true);
+            let text = command.text().to_owned();
+            item(ui, command, text, true);
         }
         ui.menu_button("Open demo bath", |ui| {
             for (number, demo) in DEMOS.iter().enumerate() {
@@ -98,7 +100,8 @@ fn menus(app: &App, ui: &mut Ui) -> Option<Command> {
         });
         ui.separator();
         for command in [Command::Save, Command::SaveAs, Command::ExportSheet] {
-            item(ui, command, command.text().to_owned(), true);
+            let text = command.text().to_owned();
+            item(ui, command, text, true);
         }
         ui.separator();
         item(ui, Command::Quit, Command::Quit.text().to_owned(), true);
@@ -115,8 +118,9 @@ fn menus(app: &App, ui: &mut Ui) -> Option<Command> {
         item(ui, Command::FindDose, Command::FindDose.text().to_owned(), true);
     });
     ui.menu_button("View", |ui| {
-        for command in [Command::ShowBath, Command::ShowSheet, Command::SwitchTheme] {
-            item(ui, command, command.text().to_owned(), true);
+        for command in Command::PAGES.into_iter().chain([Command::SwitchTheme]) {
+            let text = command.text().to_owned();
+            item(ui, command, text, true);
         }
     });
     chosen
