@@ -1,9 +1,11 @@
 //! The shift forecast through the public interface: against closed forms, fine scans and the dose search's own
 //! assessment, none of which it uses.
 
-use bathwright::bath::{Bath, Demo, Replenish, Running, Wall};
+use bathwright::bath::{Bath, Demo, Replenish, Running, Solids, Wall};
 use bathwright::dosing::Assessor;
+use bathwright::equilibrium::{Sensitivities, Solver, Value};
 use bathwright::study::shift::{Contents, TopUpPlan, forecast, plan_top_ups};
+use std::time::Instant;
 
 /// A demo bath with a dose of its first agent.
 fn dosed(file: &str, dose_g_l: f64) -> Bath {
@@ -191,4 +193,74 @@ fn a_dose_that_may_not_grow_any_more_leads_to_a_bail_out_that_holds() {
     assert!(!plan.bail_outs.is_empty());
     assert!(plan.fails_from.is_none() && holds(&plan), "{:?}", plan.fails_from);
     assert!(plan.forecast.points.iter().all(|point| point.contents.doses[0] <= 36.0 + 1e-9));
+}
+
+#[test]
+fn no_acid_is_planned_for_a_bath_that_may_hold_cyanide() {
+    let mut bath = dosed("derusting.ron", 29.24);
+    bath.project.sheet.holds_cyanide_sulfide_or_hypochlorite = true;
+    let running = bath.running(&bath.project.shift).unwrap();
+    let plan = plan_top_ups(&running, 0, Replenish::Fewest, true).unwrap();
+    assert!(plan.refused.is_some());
+    assert!(plan.top_ups.is_empty() && plan.bail_outs.is_empty());
+}
+
+/// Every uncertainty of the forecast against the one computed at that very moment.
+#[test]
+fn the_interpolated_uncertainty_is_that_of_each_moment() {
+    for (file, dose) in
+        [("derusting.ron", 29.24), ("hard_water_cleaner.ron", 2.446), ("electroless_nickel.ron", 11.9)]
+    {
+        let bath = dosed(file, dose);
+        let running = bath.running(&bath.project.shift).unwrap();
+        let forecast = forecast(&running).unwrap();
+        let set = forecast.places[0];
+        let constants = running.bath.constants_at(set.temperature_c);
+        let mut solver = Solver::new();
+        let value = Value::Free(running.bath.limits[0].component);
+        let mut missed: f64 = 0.0;
+        for point in &forecast.points {
+            let totals = &point.contents.totals;
+            let solution =
+                running.bath.solve_totals(&mut solver, &constants, totals, set.ph, Solids::Walls).unwrap();
+            let ask = |answers: &Sensitivities| answers.sigma_log10(&[value])[0];
+            let sigma = running
+                .bath
+                .sensitivities(&constants, totals, set.ph, Solids::Walls, &solution, ask)
+                .unwrap();
+            missed = missed.max((point.metals[0].sigma - sigma).abs());
+        }
+        assert!(missed < 0.01, "{file}: {missed}");
+    }
+}
+
+/// `cargo test --release --test shift_forecast -- --ignored --nocapture`: the aim is 10 ms for the forecast.
+#[test]
+#[ignore = "measures time"]
+fn fifteen_shifts_of_eight_hours_are_forecast_in_milliseconds() {
+    for (file, dose) in
+        [("derusting.ron", 29.24), ("hard_water_cleaner.ron", 2.446), ("electroless_nickel.ron", 11.9)]
+    {
+        let mut bath = dosed(file, dose);
+        bath.project.shift.shifts = 15;
+        let running = bath.running(&bath.project.shift).unwrap();
+        let time = |what: &mut dyn FnMut()| {
+            let mut times: Vec<f64> = (0..9)
+                .map(|_| {
+                    let begin = Instant::now();
+                    what();
+                    begin.elapsed().as_secs_f64() * 1e3
+                })
+                .collect();
+            times.sort_by(f64::total_cmp);
+            times[4]
+        };
+        let forecast_ms = time(&mut || drop(forecast(&running).unwrap()));
+        let plans = [Replenish::Fewest, Replenish::LeastAgent];
+        let [fewest, least] =
+            plans.map(|choice| time(&mut || drop(plan_top_ups(&running, 0, choice, true).unwrap())));
+        println!(
+            "{file}: forecast {forecast_ms:.1} ms, plan {fewest:.0} ms (fewest), {least:.0} ms (least agent)"
+        );
+    }
 }

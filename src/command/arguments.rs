@@ -129,7 +129,7 @@ pub enum Command {
         /// Project file.
         file: PathBuf,
         /// Shifts to look ahead; as the project says without it.
-        #[arg(long)]
+        #[arg(long, value_parser = clap::value_parser!(u32).range(1..=100))]
         shifts: Option<u32>,
         /// Product id, name or agent; the bath's first agent without it.
         #[arg(long)]

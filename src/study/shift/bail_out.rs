@@ -1,8 +1,8 @@
 //! Bail-out: when no addition holds the bath any more, some of it is taken out and replaced, with fresh bath or with
 //! water, and the agent that went with it is dosed again.
 
+use super::planner::{Planner, addition_cap};
 use super::stirred::Contents;
-use super::top_ups::{Planner, addition_cap};
 use super::walk::Change;
 use crate::bath::{Adjustment, Bath, Running, Wall};
 use crate::dosing::{Direction, Measured, measure};

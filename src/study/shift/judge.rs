@@ -58,6 +58,17 @@ impl Spot {
     }
 }
 
+/// A place of the operating range at one moment.
+struct Scanned {
+    place: Place,
+    /// Number of the scanner of its temperature.
+    scanner: usize,
+    /// log10 of every value.
+    values: Vec<f64>,
+    /// Whether a solid comes or goes between here and a neighbour.
+    bends: bool,
+}
+
 /// Follows the walls of a bath; the first place is the set point.
 pub struct Judge<'a> {
     bath: &'a Bath,
@@ -69,8 +80,7 @@ pub struct Judge<'a> {
 }
 
 impl<'a> Judge<'a> {
-    /// Finds the places to follow, from what the tank will hold at some moments. The first is scanned most closely: a
-    /// plan keeps the bath near it.
+    /// Finds the places to follow, from what the tank will hold at some moments.
     pub fn over(bath: &'a Bath, moments: &[Vec<f64>]) -> Result<Self, EquilibriumError> {
         let mut values: Vec<Value> = bath.limits.iter().map(|limit| Value::Free(limit.component)).collect();
         let mut walls = Vec::new();
@@ -85,8 +95,13 @@ impl<'a> Judge<'a> {
         let mut judge = Self { bath, walls, values, spots: Vec::new() };
         let set = Place { ph: bath.ph_set(), temperature_c: bath.project.tank.temperature_c.set };
         judge.follow(set);
-        for (number, totals) in moments.iter().enumerate() {
-            judge.add_worst(totals, number == 0)?;
+        let temperature = bath.project.tank.temperature_c;
+        let mut temperatures = vec![temperature.low, temperature.set, temperature.high];
+        temperatures.dedup();
+        let places = temperatures.into_iter().map(|temperature_c| Place { ph: None, temperature_c });
+        let mut scanners: Vec<Spot> = places.map(|place| judge.spot(place)).collect();
+        for totals in moments {
+            judge.add_worst(&mut scanners, totals)?;
         }
         Ok(judge)
     }
@@ -104,37 +119,40 @@ impl<'a> Judge<'a> {
     }
 
     /// Adds the places of the operating range where each wall that is not far off is nearest, by plain numbers and
-    /// with confidence; not closely, confidence is asked for at the corners alone.
-    fn add_worst(&mut self, totals: &[f64], closely: bool) -> Result<(), EquilibriumError> {
-        let scan = self.scan(totals)?;
+    /// with confidence. Confidence is asked for at the corners, and where a solid comes or goes, which bends the
+    /// uncertainty.
+    fn add_worst(&mut self, scanners: &mut [Spot], totals: &[f64]) -> Result<(), EquilibriumError> {
+        let scan = self.scan(scanners, totals)?;
         let excesses: Vec<Vec<f64>> = scan
             .iter()
-            .map(|(_, values)| (0..self.walls.len()).map(|wall| self.excess(wall, values, None)).collect())
+            .map(|at| (0..self.walls.len()).map(|wall| self.excess(wall, &at.values, None)).collect())
             .collect();
         let worst: Vec<f64> = (0..self.walls.len())
             .map(|wall| excesses.iter().map(|at| at[wall]).fold(f64::NEG_INFINITY, f64::max))
             .collect();
         for wall in (0..self.walls.len()).filter(|&wall| worst[wall] > FAR) {
             if let Some(at) = excesses.iter().position(|at| at[wall] == worst[wall]) {
-                self.follow(scan[at].0);
+                self.follow(scan[at].place);
             }
         }
         if !IN_DOUBT.contains(&worst.iter().copied().fold(f64::NEG_INFINITY, f64::max)) {
             return Ok(());
         }
         let mut surest = vec![(f64::NEG_INFINITY, self.spots[0].place); self.walls.len()];
-        for ((place, values), excesses) in
-            scan.iter().zip(&excesses).filter(|((place, _), _)| closely || self.is_corner(place))
+        for (at, excesses) in
+            scan.iter().zip(&excesses).filter(|(at, _)| at.bends || self.is_corner(&at.place))
         {
             let near = |wall: usize| worst[wall] > FAR && excesses[wall] > worst[wall] - REACH;
             if !(0..self.walls.len()).any(near) {
                 continue;
             }
-            let sigmas = self.spot(*place).sigmas(self.bath, &self.values, totals)?;
+            let scanner = &mut scanners[at.scanner];
+            scanner.place = at.place;
+            let sigmas = scanner.sigmas(self.bath, &self.values, totals)?;
             for wall in (0..self.walls.len()).filter(|&wall| worst[wall] > FAR) {
-                let excess = self.excess(wall, values, Some(&sigmas));
+                let excess = self.excess(wall, &at.values, Some(&sigmas));
                 if excess > surest[wall].0 {
-                    surest[wall] = (excess, *place);
+                    surest[wall] = (excess, at.place);
                 }
             }
         }
@@ -144,22 +162,25 @@ impl<'a> Judge<'a> {
         Ok(())
     }
 
-    /// Values over the operating range.
-    fn scan(&self, totals: &[f64]) -> Result<Vec<(Place, Vec<f64>)>, EquilibriumError> {
-        let temperature = self.bath.project.tank.temperature_c;
-        let mut temperatures = vec![temperature.low, temperature.set, temperature.high];
-        temperatures.dedup();
+    /// Values over the operating range; one scanner for each temperature.
+    fn scan(&self, scanners: &mut [Spot], totals: &[f64]) -> Result<Vec<Scanned>, EquilibriumError> {
         let ph: Vec<Option<f64>> = match self.bath.ph() {
             Some(range) => range.samples(PH_SAMPLES).into_iter().map(Some).collect(),
             None => vec![None],
         };
-        let mut scan = Vec::with_capacity(temperatures.len() * ph.len());
-        for temperature_c in temperatures {
-            let mut spot = self.spot(Place { ph: None, temperature_c });
+        let mut scan: Vec<Scanned> = Vec::with_capacity(scanners.len() * ph.len());
+        for (scanner, spot) in scanners.iter_mut().enumerate() {
+            let mut before: Option<Vec<bool>> = None;
             for &ph in &ph {
                 spot.place.ph = ph;
                 let solution = spot.solve(self.bath, totals)?;
-                scan.push((spot.place, self.read(&solution)));
+                let present: Vec<bool> = solution.solids.iter().map(|amount| *amount > 0.0).collect();
+                let bends = before.as_ref().is_some_and(|before| *before != present);
+                if let Some(last) = scan.last_mut().filter(|_| bends) {
+                    last.bends = true;
+                }
+                scan.push(Scanned { place: spot.place, scanner, values: self.read(&solution), bends });
+                before = Some(present);
             }
         }
         Ok(scan)
@@ -244,6 +265,16 @@ impl<'a> Judge<'a> {
         let mut crossed: Vec<usize> = (0..worst.len()).filter(|&wall| worst[wall] > 0.0).collect();
         crossed.sort_by(|&a, &b| worst[b].total_cmp(&worst[a]));
         Ok(crossed.into_iter().map(|wall| self.walls[wall].0).collect())
+    }
+
+    /// Whether a value with this log10 is drawn, or near enough to its wall to count.
+    pub fn counts(&self, value: usize, log10: f64) -> bool {
+        matches!(self.values[value], Value::Free(_)) || log10 > FAR
+    }
+
+    /// log10 of the excess over the nearest wall at a place with these values, by plain numbers.
+    pub fn nearest(&self, values: &[f64]) -> f64 {
+        (0..self.walls.len()).map(|wall| self.excess(wall, values, None)).fold(f64::NEG_INFINITY, f64::max)
     }
 
     fn crossed(&self, values: &[f64], sigmas: Option<&[f64]>) -> bool {

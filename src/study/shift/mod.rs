@@ -7,6 +7,7 @@ mod crossings;
 mod csv;
 mod forecast;
 mod judge;
+mod planner;
 mod stirred;
 mod top_ups;
 mod walk;

@@ -6,23 +6,20 @@
 //! addition helps, some of the bath has to go.
 
 use super::bail_out::{BailOut, bail_out};
-use super::forecast::{Forecast, judge, replay};
-use super::judge::Judge;
-use super::stirred::{Contents, bound};
+use super::forecast::{Forecast, replay};
+use super::planner::{Mixture, Planner, addition_cap};
+use super::stirred::Contents;
 use super::walk::Change;
-use crate::bath::{Adjustment, Bath, Replenish, Running};
+use crate::bath::{Adjustment, Replenish, Running};
 use crate::dosing::{Direction, Measured, measure, plan};
 use crate::equilibrium::EquilibriumError;
 
-/// Largest share of an agent in the bath that one addition may bring, when the project names none (common practice:
-/// 15 %).
-const ADDITION_CAP: f64 = 0.15;
 /// Sizes of a top-up that are compared.
 const SIZES: usize = 10;
 /// Bisections between two of them.
 const BISECTIONS: usize = 10;
 /// Most bail-outs of one plan.
-const MOST_BAIL_OUTS: usize = 12;
+const MOST_BAIL_OUTS: usize = 100;
 
 /// One addition of agent.
 #[derive(Clone, Debug, PartialEq)]
@@ -79,24 +76,17 @@ pub fn plan_top_ups(
     replenish: Replenish,
     sure: bool,
 ) -> Result<TopUpPlan, EquilibriumError> {
-    let start = Contents::at_start(&running.bath)?;
-    let mut planner = Planner {
-        running,
-        judge: judge(running, &start)?,
-        tank: running.bath.clone().into_owned(),
-        agent,
-        sure,
-        start,
-        uncorrected: None,
-    };
+    let mut planner = Planner::new(running, agent, sure)?;
     let mut plan = Steps::default();
-    let mut frozen = 0;
+    let (mut frozen, mut from) = (0, 0);
     let fails_from = loop {
-        let Some(late) = planner.first_crossed(&plan)? else { break None };
-        if let Some(better) = planner.hold_through(&plan, late, frozen, replenish)? {
+        let Some(late) = planner.first_crossed(from, &plan.changes())? else { break None };
+        if let Some((better, first)) = planner.hold_through(&plan, late, frozen, replenish)? {
             plan = better;
+            from = first;
             continue;
         }
+        planner.forget_after(frozen);
         let step = late.saturating_sub(1).max(frozen);
         let hour = late as f64 * running.step_h;
         if plan.bail_outs.len() >= MOST_BAIL_OUTS || plan.bail_outs.iter().any(|known| known.step == step) {
@@ -105,10 +95,14 @@ pub fn plan_top_ups(
         let Some(found) = bail_out(&mut planner, &plan.changes(), step, late)? else { break Some(hour) };
         plan.top_ups.retain(|(top_up, _)| top_up.step != step);
         plan.bail_outs.push(found);
-        frozen = step;
+        planner.forget_after(step);
+        (frozen, from) = (step, step);
     };
-    let forecast = replay(running, &mut planner.judge, &planner.start, &plan.changes())?;
     let refused = planner.refusal(&plan)?;
+    if refused.is_some() {
+        plan = Steps::default();
+    }
+    let forecast = replay(running, &mut planner.judge, &planner.start, &plan.changes())?;
     Ok(TopUpPlan {
         agent,
         sure,
@@ -147,113 +141,16 @@ impl Steps {
     }
 }
 
-/// Everything that a trial needs.
-pub struct Planner<'a> {
-    pub running: &'a Running<'a>,
-    pub judge: Judge<'a>,
-    /// The bath, to be given the contents of an hour.
-    tank: Bath,
-    pub agent: usize,
-    sure: bool,
-    pub start: Contents,
-    uncorrected: Option<String>,
-}
-
-/// A dose with the acid or alkali that goes with it, per gram of product.
-pub struct Mixture {
-    /// Moles of each component per gram of the agent's product.
-    per_gram: Vec<f64>,
-    /// Acid or alkali, g per gram.
-    adjuster: Option<Adjustment>,
-}
-
-impl Mixture {
-    /// The acid or alkali for a dose, exact and as measured out.
-    pub fn adjustment(&self, running: &Running, dose_g_l: f64) -> Option<(Adjustment, Measured)> {
-        let per_gram = self.adjuster.as_ref()?;
-        let adjustment = Adjustment { dose_g_l: per_gram.dose_g_l * dose_g_l, ..per_gram.clone() };
-        let (amount, details) = (adjustment.dose_g_l, &running.bath.project.sheet);
-        let measured = measure(&adjustment.product, amount, running.volume_l, details, Direction::Down);
-        Some((adjustment, measured))
-    }
-}
-
 impl Planner<'_> {
-    /// Whether 95 % confidence is asked for.
-    pub fn sure(&self) -> bool {
-        self.sure
-    }
-
-    /// First step at which a wall is crossed.
-    fn first_crossed(&mut self, plan: &Steps) -> Result<Option<usize>, EquilibriumError> {
-        let steps = self.running.steps();
-        let start = self.start.clone();
-        let reach = self.reach(&start, 0, steps, &plan.changes(), true)?;
-        Ok((reach <= steps).then_some(reach))
-    }
-
-    /// First step from `from` to `until` at which the contents no longer hold, `until + 1` when they do throughout.
-    /// What is changed at a step counts there as soon as it is changed; at `from` only when `changed_at_first`.
-    pub fn reach(
-        &mut self,
-        from_contents: &Contents,
-        from: usize,
-        until: usize,
-        changes: &[Change],
-        changed_at_first: bool,
-    ) -> Result<usize, EquilibriumError> {
-        let mut contents = from_contents.clone();
-        for step in from..=until {
-            let mut solids = self.bound(&contents)?;
-            let due =
-                changes.iter().filter(|change| change.step == step && (step > from || changed_at_first));
-            let due: Vec<&Change> = due.collect();
-            // What comes at the beginning mends the beginning; later it must have held until then.
-            let mends = step == 0 && !due.is_empty();
-            if !mends && !self.judge.holds(&contents.totals, self.sure)? {
-                return Ok(step);
-            }
-            if !due.is_empty() {
-                for change in due {
-                    contents = change.apply(&contents, &solids);
-                }
-                if !self.judge.holds(&contents.totals, self.sure)? {
-                    return Ok(step);
-                }
-                solids = self.bound(&contents)?;
-            }
-            contents = contents.later(self.running, &solids, self.running.step_h);
-        }
-        Ok(until + 1)
-    }
-
-    /// Contents at the beginning of a step, before what is changed there.
-    pub fn contents_at(&mut self, step: usize, changes: &[Change]) -> Result<Contents, EquilibriumError> {
-        let mut contents = self.start.clone();
-        for earlier in 0..step {
-            for change in changes.iter().filter(|change| change.step == earlier) {
-                contents = change.apply(&contents, &self.bound(&contents)?);
-            }
-            let solids = self.bound(&contents)?;
-            contents = contents.later(self.running, &solids, self.running.step_h);
-        }
-        Ok(contents)
-    }
-
-    /// What solids hold of each component at the set point.
-    pub fn bound(&mut self, contents: &Contents) -> Result<Vec<f64>, EquilibriumError> {
-        let solution = self.judge.solve(0, &contents.totals)?;
-        Ok(bound(&self.running.bath, &solution))
-    }
-
-    /// The plan with as many more top-ups as carry the bath past a step that would be crossed.
+    /// The plan with as many more top-ups as carry the bath past a step that would be crossed, and the first step that
+    /// they change.
     fn hold_through(
         &mut self,
         plan: &Steps,
         late: usize,
         frozen: usize,
         replenish: Replenish,
-    ) -> Result<Option<Steps>, EquilibriumError> {
+    ) -> Result<Option<(Steps, usize)>, EquilibriumError> {
         let mut tried = plan.clone();
         for step in (frozen..=late.saturating_sub(1)).rev() {
             if tried.changed_at(step) {
@@ -262,22 +159,22 @@ impl Planner<'_> {
             let changes = tried.changes();
             let contents = self.contents_at(step, &changes)?;
             let Some(most) = self.most(&contents, step, &changes)? else { return Ok(None) };
-            if let Some(size) = self.size(&contents, step, late, &changes, &most, replenish)? {
-                let top_up = self.top_up(step, &contents, &most, size);
-                return Ok(top_up.map(|top_up| tried.with(top_up)));
-            }
+            let size = self.size(&contents, (step, late), &changes, &most, replenish)?;
             // More than one addition may bring is asked for: this one comes in full, and another before it.
-            let Some(top_up) = self.top_up(step, &contents, &most, most.capped) else { return Ok(None) };
-            if !most.by_cap {
+            let in_full = size.is_none();
+            let Some(top_up) = self.top_up(step, &contents, &most, size.unwrap_or(most.capped)) else {
                 return Ok(None);
-            }
+            };
             tried = tried.with(top_up);
-            let start = self.start.clone();
-            let reach = self.reach(&start, 0, late, &tried.changes(), true)?;
-            if reach > late {
-                return Ok(Some(tried));
+            self.forget_after(step);
+            if !in_full {
+                return Ok(Some((tried, step)));
             }
-            if reach < late {
+            let reach = self.reach(&contents, step, late, &tried.changes(), true)?;
+            if reach > late {
+                return Ok(Some((tried, step)));
+            }
+            if reach < late || !most.by_cap {
                 return Ok(None);
             }
         }
@@ -322,8 +219,7 @@ impl Planner<'_> {
     fn size(
         &mut self,
         contents: &Contents,
-        step: usize,
-        late: usize,
+        (step, late): (usize, usize),
         changes: &[Change],
         most: &Most,
         replenish: Replenish,
@@ -389,34 +285,6 @@ impl Planner<'_> {
         Some((TopUp { hour, step, measured, dose_g_l, share, adjustment }, change))
     }
 
-    /// The agent with its acid or alkali in proportion, found for the largest amount in question.
-    pub fn mixture(&mut self, contents: &Contents, largest: f64) -> Result<Mixture, EquilibriumError> {
-        self.tank.contents.clone_from(&contents.totals);
-        let mut doses = vec![0.0; self.tank.agents.len()];
-        doses[self.agent] = largest;
-        let corrected = self.tank.corrected(&doses)?;
-        self.uncorrected = self.uncorrected.take().or(corrected.failure);
-        let adjuster =
-            corrected.adjustment.map(|found| Adjustment { dose_g_l: found.dose_g_l / largest, ..found });
-        let mut per_gram = self.tank.agents[self.agent].per_gram.clone();
-        if let Some(Adjustment { product, dose_g_l }) = &adjuster {
-            let bath = &self.tank;
-            let adjusts = if *product == bath.alkali.product { &bath.alkali } else { &bath.acid };
-            for (total, more) in per_gram.iter_mut().zip(&adjusts.per_gram) {
-                *total += dose_g_l * more;
-            }
-        }
-        Ok(Mixture { per_gram, adjuster })
-    }
-
-    /// A dose put in, nothing taken out.
-    pub fn change(&self, step: usize, mixture: &Mixture, dose_g_l: f64) -> Change {
-        let mut doses = vec![0.0; self.running.bath.agents.len()];
-        doses[self.agent] = dose_g_l;
-        let add = mixture.per_gram.iter().map(|moles| moles * dose_g_l).collect();
-        Change { step, keep: 1.0, add, doses }
-    }
-
     /// Whether the largest addition may be printed, as the dose plan judges it.
     fn refusal(&mut self, steps: &Steps) -> Result<Option<String>, EquilibriumError> {
         let top_ups = steps.top_ups.iter().map(|(top_up, _)| (top_up.step, top_up.dose_g_l));
@@ -437,9 +305,4 @@ struct Most {
     /// Whether the cap of one addition is what limits it.
     by_cap: bool,
     mixture: Mixture,
-}
-
-/// Largest share of an agent in the bath that one addition may bring.
-pub fn addition_cap(bath: &Bath) -> f64 {
-    bath.project.sheet.addition_cap_percent.map_or(ADDITION_CAP, |percent| percent / 100.0)
 }

@@ -71,7 +71,7 @@ pub fn bail_out_words(running: &Running, agent: usize, bail_out: &BailOut) -> St
         bail_out.refill.name(),
     );
     if let Some(measured) = bail_out.measured.as_ref().filter(|_| bail_out.dose_g_l > 0.0) {
-        words += &format!(", with {} of {product}", measured.amount);
+        words += &format!(" plus {} of {product}", measured.amount);
     }
     if let Some((adjustment, measured)) = &bail_out.adjustment {
         words += &format!(" and {} of {}", measured.amount, adjustment.product.name);

@@ -5,7 +5,7 @@ use super::palette::{ACCENT, FRAME, HATCH_CEILING, HATCH_FLOOR, INK_SOFT, LIMIT,
 use super::pane::{Pane, TICK, at_least_two, numbered, path, ticks};
 use super::paper::{HEIGHT, Hold, Paper, Type, WIDTH};
 use super::{BETWEEN, BOTTOM, LEFT, RIGHT, head, title};
-use crate::bath::Running;
+use crate::bath::{Running, Wall};
 use crate::quantity::{fixed, p_value, plain};
 use crate::study::labels::{Area, quietest};
 use crate::study::shift::{Forecast, MetalAt, TopUpPlan, crossing_words};
@@ -24,6 +24,9 @@ const PLATE: f64 = 24.0;
 const BEYOND: f64 = 0.8;
 const ON_PLATE: Type = Type::bold(13.0, LIMIT);
 
+/// A number of a metal at a moment.
+type Value = fn(&MetalAt) -> f64;
+
 /// Both courses as an SVG document of 960 × 640 pixels.
 pub fn to_svg(running: &Running, alone: &Forecast, plan: &TopUpPlan) -> String {
     let bath = &running.bath;
@@ -35,7 +38,7 @@ pub fn to_svg(running: &Running, alone: &Forecast, plan: &TopUpPlan) -> String {
         running.shifts,
         plain(hours / running.shifts as f64, 2)
     );
-    let key = "solid: with additions · shaded: operating range, paler with 95 % confidence · dashed: left alone, dotted its 95 % edge";
+    let key = "solid: with additions · shaded: operating range, paler with 95 % confidence · dashed: left alone, dotted its 95 % edge, dot where that is crossed";
     let reading = match alone.crossings.first() {
         Some(crossing) => format!("Left alone, {}", crossing_words(running, crossing)),
         None => "Left alone, every limit holds".to_owned(),
@@ -120,31 +123,41 @@ fn metal(
     ground(paper, running, pane, &numbered(at_least_two(pane.y.0, pane.y.1, most), |v| -v));
     plates(paper, pane, own.ceiling, own.floor);
     let hours = |forecast: &Forecast| forecast.points.iter().map(|point| point.hour).collect::<Vec<f64>>();
-    let of = |forecast: &Forecast, value: fn(&MetalAt) -> f64| {
+    let of = |forecast: &Forecast, value: Value| {
         forecast.points.iter().map(|point| value(&point.metals[limit])).collect::<Vec<f64>>()
     };
     let with = &plan.forecast;
     pane.clip(paper, &format!("shift{limit}"));
     let x = hours(with);
-    let ribbons: [[fn(&MetalAt) -> f64; 2]; 2] = [[|m| m.most_95, |m| m.least_95], [|m| m.most, |m| m.least]];
+    let ribbons: [[Value; 2]; 2] = [[|m| m.most_95, |m| m.least_95], [|m| m.most, |m| m.least]];
     for edges in ribbons {
         let [upper, lower] = edges.map(|edge| of(with, edge));
         paper.tint(&ribbon(pane, &x, &upper, &lower), pen(0).0, 0.2);
     }
     let x_alone = hours(alone);
-    let edges: [(Option<f64>, fn(&MetalAt) -> f64); 2] =
-        [(own.ceiling, |m| m.most_95), (own.floor, |m| m.least_95)];
+    let edges: [(Option<f64>, Value); 2] = [(own.ceiling, |m| m.most_95), (own.floor, |m| m.least_95)];
     for edge in edges.into_iter().filter_map(|(level, edge)| level.map(|_| edge)) {
         paper.path(&path(pane, &x_alone, &of(alone, edge)), (pen(1).0, "1.5 4"), 1.6);
     }
     let left = path(pane, &x_alone, &of(alone, |m| m.log10_free));
-    paper.path(&left, (WHITE, ""), 4.5);
+    paper.path(&left, (WHITE, ""), 3.4);
     paper.path(&left, (pen(1).0, pen(1).1), 2.2);
     let free = of(with, |m| m.log10_free);
     let line = path(pane, &x, &free);
     paper.path(&line, (WHITE, ""), 5.0);
     paper.path(&line, (pen(0).0, ""), 2.6);
     paper.close();
+    let ends = alone.crossings.iter().filter_map(|crossing| {
+        let level = match crossing.wall {
+            Wall::Ceiling(i) if i == limit => own.ceiling,
+            Wall::Floor(i) if i == limit => own.floor,
+            _ => None,
+        };
+        Some((crossing.hour_95?, level?.log10()))
+    });
+    for end in ends {
+        paper.dot(pane.at(end), pen(1).0);
+    }
     let mut taken: Vec<Area> = Vec::new();
     let limits = [(own.ceiling, "ceiling", 1.0), (own.floor, "floor", -1.0)];
     for (level, kind, side) in limits.into_iter().filter_map(|(level, kind, side)| Some((level?, kind, side)))

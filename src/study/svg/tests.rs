@@ -124,3 +124,26 @@ fn a_diagram_without_any_answer_is_still_a_picture() {
     assert_well_formed(&svg);
     assert!(!svg.contains("NaN"));
 }
+
+#[test]
+fn the_picture_of_a_shift_is_well_formed_escapes_what_users_type_and_marks_what_is_added() {
+    for (file, dose) in [("derusting.ron", 29.24), ("electroless_nickel.ron", 11.9)] {
+        let mut project = crate::bath::Demo::named(file).unwrap().project().unwrap();
+        project.agents[0].dose_g_l = dose;
+        project.name = "Tank <A> & \"B\"".to_owned();
+        project.limits[0].wall = "found <b>by</b> & by".to_owned();
+        let bath = Bath::resolve(&project).unwrap();
+        let running = bath.running(&project.shift).unwrap();
+        let alone = crate::study::shift::forecast(&running).unwrap();
+        let plan = crate::study::shift::plan_top_ups(&running, 0, project.shift.replenish, true).unwrap();
+        let svg = shift::to_svg(&running, &alone, &plan);
+        assert_well_formed(&svg);
+        assert!(!svg.contains("NaN") && !svg.contains("inf\"") && !svg.contains("<b>"), "{file}");
+        for top_up in &plan.top_ups {
+            assert!(svg.contains(&top_up.measured.amount), "{file}");
+        }
+        for bail_out in &plan.bail_outs {
+            assert!(svg.contains(&format!("bail-out {} L", bail_out.litres)), "{file}");
+        }
+    }
+}
