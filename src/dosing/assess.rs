@@ -91,10 +91,14 @@ pub struct Assessor<'a> {
 
 /// The worst places of one wall.
 #[derive(Clone, Copy, Debug, PartialEq)]
-pub(super) struct WorstPlaces {
+pub struct WorstPlaces {
+    /// By plain numbers.
     pub plain: Place,
+    /// log10 of the excess there.
     pub excess: f64,
+    /// With 95 % confidence.
     pub sure: Place,
+    /// log10 of the excess there, one-sided.
     pub excess_95: f64,
     /// Whether the surest place is where a solid comes or goes.
     pub at_edge: bool,
@@ -155,6 +159,15 @@ impl<'a> Assessor<'a> {
             });
         }
         Ok(Assessment { walls, metals })
+    }
+
+    /// The worst places of every wall for a bath that holds these totals in mol/L, with its pH held as it is.
+    ///
+    /// # Errors
+    /// [`EquilibriumError`] for an ill-posed bath.
+    pub fn worst_of(&mut self, totals: &[f64]) -> Result<Vec<WorstPlaces>, EquilibriumError> {
+        let totals = totals.to_vec();
+        self.worst(&Corrected { totals, dilution: 1.0, adjustment: None, failure: None })
     }
 
     /// The worst places of every wall, plain and with 95 % confidence.

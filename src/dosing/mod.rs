@@ -16,10 +16,11 @@ mod sampling;
 mod search;
 mod verdict;
 
-pub use assess::{Assessment, Assessor, CONFIDENCE_95, MetalReading, Reading, WallReading};
+pub use assess::{Assessment, Assessor, CONFIDENCE_95, MetalReading, Reading, WallReading, WorstPlaces};
 pub use blend::{Aim, Binding, Blend, BlendError, MOST_AGENTS, Worsening, blend};
 pub use ledger::{Holder, LedgerEntry, ledger};
 pub use measure::{Direction, Measured, ROUNDING_FLAG, measure};
+pub use places::Place;
 pub use plan::{Addition, Plan, Step, plan};
 pub use reason::{Change, Reason, why_none};
 pub use sampling::{Sampled, sample};

@@ -21,9 +21,12 @@ pub(super) const FAR: f64 = -2.0;
 
 /// A point of the operating window.
 #[derive(Clone, Copy, Debug, PartialEq)]
-pub(super) struct Place {
+pub struct Place {
+    /// Temperature in °C.
     pub temperature_c: f64,
+    /// pH to hold; `None` lets the charge balance decide.
     pub ph: Option<f64>,
+    /// Where the drifts are.
     pub position: Position,
 }
 

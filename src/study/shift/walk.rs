@@ -96,7 +96,7 @@ pub fn at(
 ) -> Result<Moment, EquilibriumError> {
     let set = judge.solve(0, &contents.totals)?;
     let mut values = Vec::with_capacity(judge.places());
-    values.push(judge.read(&set));
+    values.push(judge.read(0, &set));
     for place in 1..judge.places() {
         values.push(judge.values(place, &contents.totals)?);
     }
