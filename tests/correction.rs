@@ -392,6 +392,21 @@ fn a_bath_found_in_order_needs_nothing() {
 }
 
 #[test]
+fn no_acid_is_told_for_a_bath_that_may_hold_cyanide() {
+    // Citric acid would be the dose.
+    let mut project = demo("copper_strike.ron");
+    assert!(correct(&project, Some(1)).unwrap().refused.is_none());
+    project.sheet.holds_cyanide_sulfide_or_hypochlorite = true;
+    assert!(correct(&project, Some(1)).unwrap().refused.unwrap().contains("Citric acid"));
+    // Sulfuric acid would bring the pH down.
+    let mut project = demo("copper_strike.ron");
+    project.sheet.holds_cyanide_sulfide_or_hypochlorite = true;
+    project.analysis.ph =
+        Some(MeterReading { value: 9.8, temperature_c: None, uncertainty: None, trust: Trust::Today });
+    assert!(correct(&project, None).unwrap().refused.unwrap().contains("poisonous gas"));
+}
+
+#[test]
 fn an_empty_analysis_is_refused() {
     assert!(correct(&demo("derusting.ron"), None).unwrap_err().to_string().contains("analysis is empty"));
 }

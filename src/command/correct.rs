@@ -120,6 +120,9 @@ fn ph_sentence(ph: &FoundPh) -> String {
 /// What to do, in sentences.
 fn remedy_text(correction: &Correction) -> Result<String, CommandError> {
     let bath = &correction.bath;
+    if let Some(refused) = &correction.refused {
+        return Ok(format!("\nRefused: {refused}\n"));
+    }
     let mut text = String::from("\n");
     if correction.ph_outside {
         text += &match &correction.bring_back {
@@ -161,7 +164,7 @@ fn remedy_text(correction: &Correction) -> Result<String, CommandError> {
             doses[*agent] = *dose_g_l;
             text + &additions_text(bath, &plan(bath, &doses)?)
         }
-        Remedy::BailOut(found) => bail_out_text(bath, found),
+        Remedy::BailOut(found) => bail_out_text(bath, found)?,
         Remedy::None(reason) => format!(
             "No dose and no bail-out holds. The best dose, {} g/L, reaches {} of the nearest limit.\n",
             significant(reason.best_dose_g_l, 3),
@@ -171,28 +174,28 @@ fn remedy_text(correction: &Correction) -> Result<String, CommandError> {
     Ok(text)
 }
 
-fn bail_out_text(bath: &Bath, found: &BailOut) -> String {
+fn bail_out_text(bath: &Bath, found: &BailOut) -> Result<String, CommandError> {
     let refill = match found.refill {
         Refill::Water => "water",
         Refill::Fresh => "fresh bath as made up",
     };
     let litres = found.share * bath.project.tank.volume_l;
+    let how = format!("{} ({} L), refill with {refill}", percent(found.share), grouped(litres.ceil(), 0));
+    let back = match bath.ph_set() {
+        Some(ph) => format!(", bring the pH back to {}", fixed(ph, 2)),
+        None => String::new(),
+    };
     let hold = hold_words(found.hold);
-    match found.dose {
-        None => format!(
-            "No dose holds. Bail out {} ({} L) and refill with {refill} and bring the pH back: it then holds {hold}.\n",
-            percent(found.share),
-            grouped(litres.ceil(), 0),
-        ),
-        Some((agent, dose)) => format!(
-            "No dose and no bail-out alone holds. Bail out {} ({} L), refill with {refill}, bring the pH back, then add {} g/L of {} ({}): it then holds {hold}.\n",
-            percent(found.share),
-            grouped(litres.ceil(), 0),
-            significant(dose, 3),
-            bath.agents[agent].product.name,
-            kilograms(dose * bath.project.tank.volume_l / 1000.0),
-        ),
-    }
+    let Some((agent, dose)) = found.dose else {
+        return Ok(format!("No dose holds. Bail out {how}{back}: it then holds {hold}.\n"));
+    };
+    let after = Bath::resolve(&found.project).map_err(|error| CommandError::Option(error.to_string()))?;
+    Ok(format!(
+        "No dose and no bail-out alone holds. Bail out {how}{back}, then add {} g/L of {}, {} for the tank: it then holds {hold}.\n",
+        significant(dose, 3),
+        bath.agents[agent].product.name,
+        kilograms(dose * bath.project.tank.volume_l / 1000.0),
+    ) + &additions_text(&after, &plan(&after, &after.doses())?))
 }
 
 fn hold_words(hold: Hold) -> &'static str {

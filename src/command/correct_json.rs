@@ -2,7 +2,7 @@
 
 use super::CommandError;
 use crate::bath::{Adjustment, Bath};
-use crate::dosing::{Hold, plan, share_of_limit, wall_name};
+use crate::dosing::{Hold, plan, wall_name};
 use crate::study::correction::{Correction, Effect, Refill, Remedy};
 use serde_json::{Value, json};
 
@@ -69,7 +69,7 @@ pub fn object(correction: &Correction) -> Result<Value, CommandError> {
             "bath_temperature_C": ph.bath_temperature_c,
             "sigma": ph.sigma,
             "outside_range": correction.ph_outside,
-            "bring_back": correction.bring_back.as_ref().map(adjustment),
+            "bring_back": correction.bring_back.as_ref().filter(|_| correction.refused.is_none()).map(adjustment),
         })),
         "free_metals": metals,
         "walls": walls,
@@ -97,6 +97,9 @@ fn kg(bath: &Bath, dose_g_l: f64) -> f64 {
 
 fn remedy(correction: &Correction) -> Result<Value, CommandError> {
     let bath = &correction.bath;
+    if let Some(refused) = &correction.refused {
+        return Ok(json!({ "kind": "refused", "reason": refused }));
+    }
     Ok(match &correction.remedy {
         Remedy::Nothing => json!({ "kind": "nothing", "confidence": "95 %" }),
         Remedy::Unsure => json!({ "kind": "nothing", "confidence": "plain" }),
@@ -116,7 +119,6 @@ fn remedy(correction: &Correction) -> Result<Value, CommandError> {
                     "exact_g_per_L": addition.exact_g_l,
                     "measure_out": addition.measured.amount,
                 })).collect::<Vec<_>>(),
-                "refused": plan.refused,
             })
         }
         Remedy::BailOut(found) => json!({
@@ -132,7 +134,7 @@ fn remedy(correction: &Correction) -> Result<Value, CommandError> {
         Remedy::None(reason) => json!({
             "kind": "none",
             "best_dose_g_per_L": reason.best_dose_g_l,
-            "best_share_of_limit": share_of_limit(reason.best.excess()),
+            "best_share_of_limit": 10f64.powf(reason.best.excess()),
         }),
     })
 }

@@ -103,7 +103,14 @@ pub fn plan(bath: &Bath, doses: &[f64]) -> Result<Plan, EquilibriumError> {
 }
 
 fn refusal(bath: &Bath, additions: &[Addition]) -> Option<String> {
-    let acid = additions.iter().find(|addition| addition.product.released(PROTON) > 0.0)?;
+    additions.iter().find_map(|addition| acid_refused(bath, &addition.product))
+}
+
+/// Why a product may not be added: it is acid, and the bath holds or may hold what acid turns into a poisonous gas.
+pub fn acid_refused(bath: &Bath, product: &Product) -> Option<String> {
+    if product.released(PROTON) <= 0.0 {
+        return None;
+    }
     let held: Vec<&str> = POISON_SOURCES
         .iter()
         .filter(|(token, _)| bath.system.component(token).is_some_and(|i| bath.contents[i] > 0.0))
@@ -118,7 +125,7 @@ fn refusal(bath: &Bath, additions: &[Addition]) -> Option<String> {
     };
     Some(format!(
         "{} is acid and this bath holds {what}: acid would free a poisonous gas. No addition is printed. Choose a neutral or alkaline product.",
-        acid.product.name
+        product.name
     ))
 }
 

@@ -15,7 +15,7 @@ pub use meter::FoundPh;
 pub use window::WallSpread;
 
 use crate::bath::{Adjustment, Bath, BathError, Project, Solids};
-use crate::dosing::{Assessor, Hold, Reason, Search};
+use crate::dosing::{Assessor, Hold, Reason, Search, acid_refused, plan};
 use crate::equilibrium::{EquilibriumError, Solver, Value};
 use thiserror::Error;
 use window::Window;
@@ -95,6 +95,8 @@ pub struct Correction {
     pub walls: Vec<WallSpread>,
     /// What brings it back.
     pub remedy: Remedy,
+    /// Why no addition may be told: an acid into a bath that may hold cyanide, sulfide or hypochlorite.
+    pub refused: Option<String>,
     /// Inputs that were not measured and could turn the decision, largest share of the variance first.
     pub rests_on: Vec<usize>,
 }
@@ -148,7 +150,31 @@ pub fn correct(project: &Project, agent: Option<usize>) -> Result<Correction, Co
     };
     let rests_on = remedy::rests_on(&bath, &inputs, &walls, &remedy, &mut window)?;
     drop((window, assessor));
-    Ok(Correction { bath, inputs, ph, bring_back, ph_outside, metals, walls, remedy, rests_on })
+    let refused = refused(&bath, bring_back.as_ref(), &remedy)?;
+    Ok(Correction { refused, bath, inputs, ph, bring_back, ph_outside, metals, walls, remedy, rests_on })
+}
+
+/// Why the additions may not be told, if one of them is an acid and must not be.
+fn refused(
+    bath: &Bath,
+    bring_back: Option<&Adjustment>,
+    remedy: &Remedy,
+) -> Result<Option<String>, CorrectionError> {
+    if let Some(refused) = bring_back.and_then(|adjustment| acid_refused(bath, &adjustment.product)) {
+        return Ok(Some(refused));
+    }
+    Ok(match remedy {
+        Remedy::Add { agent, dose_g_l, .. } => {
+            let mut doses = vec![0.0; bath.agents.len()];
+            doses[*agent] = *dose_g_l;
+            plan(bath, &doses)?.refused
+        }
+        Remedy::BailOut(found) => {
+            let after = Bath::resolve(&found.project)?;
+            plan(&after, &after.doses())?.refused
+        }
+        Remedy::Nothing | Remedy::Unsure | Remedy::None(_) => None,
+    })
 }
 
 fn found_metals(bath: &Bath, inputs: &[Input], ph: Option<f64>) -> Result<Vec<FoundMetal>, EquilibriumError> {

@@ -1,7 +1,10 @@
 //! Today's titration: what was found in the tank takes the place of what the recipe makes it out to be.
 //!
 //! A result is the total of one component. It replaces all that the recipe brings of that component; the counter-ions of
-//! a product stay, because a titration says nothing about them.
+//! a product stay, because a titration says nothing about them. Where the pH is predicted they move with the result: there
+//! the charge decides, and metal without its counter-ions would turn a caustic bath acid.
+
+mod check;
 
 use super::error::BathError;
 use super::operating::Ph;
@@ -121,13 +124,13 @@ impl Project {
     /// [`BathError`] naming the field of the analysis, or the line of the contents, that can't be used.
     pub fn analyzed(&self) -> Result<Analyzed, BathError> {
         let (library, catalogue) = chemistry(self)?;
-        check_ph(self)?;
+        check::ph(self)?;
         let recipe = resolved("contents", &self.contents, &library, &catalogue)?;
         let mut taken: BTreeMap<usize, usize> = BTreeMap::new();
         let (mut contents, mut origins, mut believed) = (Vec::new(), Vec::new(), Vec::new());
         for (number, finding) in self.analysis.results.iter().enumerate() {
             let field = format!("analysis.results[{number}]");
-            check_finding(&field, finding)?;
+            check::finding(&field, finding)?;
             let found = components(&field, finding, &recipe, &library, &catalogue)?;
             for &(component, _) in &found {
                 if taken.insert(component, number).is_some() {
@@ -157,9 +160,14 @@ impl Project {
                 origins.push(Origin::Finding(number));
             }
         }
+        let predicted = self.tank.ph == Ph::Predicted;
         for (number, (content, moles)) in self.contents.iter().zip(&recipe).enumerate() {
-            let kept = remainder(content, moles, &taken, &library);
-            origins.extend(kept.iter().map(|_| Origin::Recipe(number)));
+            let finding = moles.keys().find_map(|component| taken.get(component)).copied();
+            let ratio = |finding: usize| self.analysis.results[finding].amount.value / believed[finding];
+            let moving = finding.filter(|&finding| predicted && believed[finding] > 0.0);
+            let kept = remainder(content, moles, &taken, &library, moving.map_or(1.0, ratio));
+            let origin = moving.map_or(Origin::Recipe(number), Origin::Finding);
+            origins.extend(kept.iter().map(|_| origin));
             contents.extend(kept);
         }
         let mut project = Project { contents, ..self.clone() };
@@ -208,64 +216,6 @@ fn resolved(
         .collect()
 }
 
-fn check_finding(field: &str, finding: &Finding) -> Result<(), BathError> {
-    let number =
-        |part: &str, value: f64, fix| Err(BathError::Number { field: format!("{field}.{part}"), value, fix });
-    if !(finding.amount.value.is_finite() && finding.amount.value >= 0.0) {
-        return number("amount", finding.amount.value, "give zero or a positive number");
-    }
-    if let Some(percent) = finding.uncertainty_percent {
-        if !(percent.is_finite() && (0.0..=100.0).contains(&percent)) {
-            return number("uncertainty_percent", percent, "give a standard uncertainty between 0 and 100 %");
-        }
-        if finding.uncertainty.is_some() {
-            let fix = "an absolute uncertainty is given as well; keep one of them";
-            return number("uncertainty_percent", percent, fix);
-        }
-    }
-    if let Some(sigma) = finding.uncertainty {
-        let amount = sigma.to_string();
-        if sigma.unit.dimension() != finding.amount.unit.dimension() {
-            let fix = format!("give it in {}, like the amount", finding.amount.unit.symbol());
-            return Err(BathError::Unit { field: format!("{field}.uncertainty"), amount, fix });
-        }
-        if !(sigma.value.is_finite() && sigma.value >= 0.0) {
-            return number("uncertainty", sigma.value, "give zero or a positive number");
-        }
-        if sigma.value > 0.0 && finding.amount.value == 0.0 {
-            let fix = "an amount of 0 can't carry it; give the smallest amount that the method sees";
-            return number("uncertainty", sigma.value, fix);
-        }
-    }
-    Ok(())
-}
-
-fn check_ph(project: &Project) -> Result<(), BathError> {
-    let Some(reading) = project.analysis.ph else { return Ok(()) };
-    let number = |part: &str, value: f64, fix| {
-        Err(BathError::Number { field: format!("analysis.ph.{part}"), value, fix })
-    };
-    if project.tank.ph == Ph::Predicted {
-        let fix =
-            "the pH of this bath is predicted from its contents; hold it under tank.ph to use a reading";
-        return number("value", reading.value, fix);
-    }
-    if !(reading.value.is_finite() && (-1.0..=15.0).contains(&reading.value)) {
-        return number("value", reading.value, "give a pH between -1 and 15");
-    }
-    if let Some(temperature) = reading.temperature_c
-        && !(temperature.is_finite() && (0.0..=100.0).contains(&temperature))
-    {
-        return number("temperature_c", temperature, "give a temperature between 0 and 100 °C");
-    }
-    if let Some(sigma) = reading.uncertainty
-        && !(sigma.is_finite() && (0.0..=2.0).contains(&sigma))
-    {
-        return number("uncertainty", sigma, "give a standard uncertainty between 0 and 2 pH");
-    }
-    Ok(())
-}
-
 /// The components of a finding, with mol/L of each for one unit of its amount.
 fn components(
     field: &str,
@@ -309,19 +259,20 @@ fn components(
     Ok(one.into_iter().collect())
 }
 
-/// What is left of a line of the recipe when some of its components were found by analysis.
+/// What is left of a line of the recipe when some of its components were found by analysis, times a factor.
 fn remainder(
     content: &Content,
     moles: &Moles,
     taken: &BTreeMap<usize, usize>,
     library: &Library,
+    factor: f64,
 ) -> Vec<Content> {
     if !moles.keys().any(|component| taken.contains_key(component)) {
         return vec![content.clone()];
     }
     let rest = moles.iter().filter(|(component, moles)| !taken.contains_key(component) && **moles != 0.0);
     rest.map(|(&component, &moles)| {
-        let token = &library.components[component].token;
+        let (token, moles) = (&library.components[component].token, factor * moles);
         // Alkali is written as what it brings: a negative amount of hydrogen ion is no line of a recipe.
         let (what, moles) = if moles < 0.0 { ("OH-".to_owned(), -moles) } else { (token.clone(), moles) };
         Content {
@@ -415,12 +366,25 @@ mod tests {
     }
 
     #[test]
-    fn alkali_whose_metal_was_found_leaves_its_hydroxide() {
-        let project = with("aluminium_etch.ron", vec![finding("sodium", "95 g/L")]);
+    fn alkali_whose_metal_was_found_leaves_its_hydroxide_where_the_ph_is_held() {
+        let project = with("zinc_nickel.ron", vec![finding("sodium", "95 g/L")]);
         let before = Bath::resolve(&project).unwrap();
         let after = Bath::resolve(&project.analyzed().unwrap().project).unwrap();
         assert!((total(&after, "H+") - total(&before, "H+")).abs() < 1e-12);
         assert!((total(&after, "Na+") - 95.0 / 22.990).abs() < 1e-3);
+    }
+
+    #[test]
+    fn counter_ions_move_with_the_result_where_the_ph_is_predicted() {
+        let project = with("aluminium_etch.ron", vec![finding("aluminium", "95 g/L")]);
+        let before = Bath::resolve(&project).unwrap();
+        let analyzed = project.analyzed().unwrap();
+        let after = Bath::resolve(&analyzed.project).unwrap();
+        let more = (95.0 - 84.0) / 26.982;
+        assert!((total(&after, "Al+3") - total(&before, "Al+3") - more).abs() < 1e-5);
+        // Each gram of aluminium went in as its hydroxide.
+        assert!((total(&after, "H+") - total(&before, "H+") + 3.0 * more).abs() < 2e-5);
+        assert_eq!(analyzed.origins.iter().filter(|origin| **origin == Origin::Finding(0)).count(), 2);
     }
 
     #[test]
