@@ -190,3 +190,68 @@ fn every_demo_bath_opens_and_is_solved() {
         assert!(harness.state().verdict_state().is_some(), "{}", demo.file);
     }
 }
+
+/// Steps until a label appears.
+fn wait_for(harness: &mut Harness<'static, App>, label: &str) {
+    let deadline = Instant::now() + Duration::from_secs(120);
+    while harness.query_all_by_label_contains(label).count() == 0 {
+        assert!(Instant::now() < deadline, "\"{label}\" did not appear");
+        std::thread::sleep(Duration::from_millis(5));
+        harness.step();
+    }
+}
+
+#[test]
+fn the_compare_page_sets_two_agents_side_by_side_and_takes_another() {
+    let mut harness = lab();
+    command(&mut harness, Command::ShowCompare);
+    wait_for(&mut harness, "chelate rings");
+    assert!(harness.query_all_by_label_contains("smallest dose").count() > 0);
+    let agents = &harness.state().project().agents;
+    let first = agents[0].product.clone();
+    command(&mut harness, Command::Compare(first, "glycine".to_owned()));
+    wait_for(&mut harness, "agent held by");
+    wait_for(&mut harness, "glycine");
+}
+
+#[test]
+fn the_shift_page_forecasts_and_an_input_changes_it_until_undone() {
+    let project = bathwright::bath::Demo::named("derusting.ron").unwrap().project().unwrap();
+    let mut harness = open(project, Arc::new(Always(PathBuf::from("unused"))));
+    command(&mut harness, Command::FindDose);
+    settle(&mut harness);
+    command(&mut harness, Command::ShowShift);
+    wait_for(&mut harness, "Additions of");
+    let before = harness.state().project().shift.evaporation_l_h;
+    let change = |project: &mut Project| project.shift.evaporation_l_h = before + 5.0;
+    harness.state_mut().edit(change, "evaporation");
+    settle(&mut harness);
+    wait_for(&mut harness, "Additions of");
+    command(&mut harness, Command::Undo);
+    assert_eq!(harness.state().project().shift.evaporation_l_h, before);
+}
+
+#[test]
+fn the_rinse_page_treats_the_water_and_says_whose_rules_count() {
+    let mut harness = lab();
+    command(&mut harness, Command::ShowRinse);
+    wait_for(&mut harness, "to treatment");
+    assert!(harness.query_all_by_label_contains("your permit rules").count() > 0);
+    assert!(harness.query_all_by_label_contains("without agents").count() > 0);
+}
+
+#[test]
+fn each_page_has_a_key() {
+    let mut harness = lab();
+    for (key, label) in
+        [(egui_key(2), "Two agents at equal result"), (egui_key(4), "Rinse water and its treatment")]
+    {
+        harness.key_press_modifiers(eframe::egui::Modifiers::COMMAND, key);
+        settle(&mut harness);
+        wait_for(&mut harness, label);
+    }
+}
+
+fn egui_key(number: usize) -> eframe::egui::Key {
+    eframe::egui::Key::from_name(&number.to_string()).unwrap()
+}

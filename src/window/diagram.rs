@@ -133,7 +133,7 @@ fn plot<'a>(id: &'a str, link: Id, diagram: &Diagram, height: f32, grid_colour: 
 }
 
 /// Grid lines at round numbers, about `count` of them.
-fn grid(input: GridInput, count: f64) -> Vec<GridMark> {
+pub(super) fn grid(input: GridInput, count: f64) -> Vec<GridMark> {
     let (low, high) = input.bounds;
     let rough = (high - low) / count;
     if !(rough.is_finite() && rough > 0.0) {

@@ -5,10 +5,10 @@ use super::story::{ShiftStory, Story, Wanted};
 use super::theme::{GAP, INSET, RADIUS, Text, palette};
 use super::widget::NumberField;
 use crate::bath::Shift;
-use crate::quantity::{fixed, plain, significant};
-use crate::study::shift::{Forecast, bail_out_words, crossing_words, events, in_shift};
+use crate::quantity::{fixed, p_value, plain, significant};
+use crate::study::shift::{Forecast, TimePoint, bail_out_words, crossing_words, events, in_shift};
 use eframe::egui::{CentralPanel, Frame, Grid, Margin, Panel, ScrollArea, Ui};
-use egui_plot::{HLine, HoverPosition, Line, LineStyle, Plot, PlotPoints, Polygon, VLine};
+use egui_plot::{FilledArea, HLine, HoverPosition, Line, LineStyle, Plot, PlotPoints, VLine};
 
 /// Width of the inputs, points.
 const INPUTS: f32 = 300.0;
@@ -97,6 +97,11 @@ fn inputs(app: &mut App, ui: &mut Ui) {
 fn told(story: &ShiftStory, ui: &mut Ui) {
     let p = palette(ui);
     let running = &story.running;
+    if story.alone.points.first().is_some_and(|start| start.excess(false) > 0.0) {
+        let words = "◆ The doses as they stand do not hold to begin with: find the dose first.";
+        ui.label(Text::Strong.rich(words, p.not_held));
+        ui.add_space(GAP);
+    }
     for limit in 0..running.bath.limits.len() {
         card(ui, |ui| course(story, limit, ui));
     }
@@ -174,12 +179,10 @@ fn course(story: &ShiftStory, limit: usize, ui: &mut Ui) {
         ui.label(Text::Small.rich(words, p.ink2));
     });
     let shown = story.plan.as_ref().map_or(&story.alone, |plan| &plan.forecast);
-    let line = |forecast: &Forecast| -> Vec<[f64; 2]> {
-        forecast.points.iter().map(|at| [at.hour, at.metals[limit].log10_free]).collect()
-    };
-    let highest = shown.points.iter().map(|at| [at.hour, at.metals[limit].most_95]);
-    let lowest = shown.points.iter().rev().map(|at| [at.hour, at.metals[limit].least_95]);
-    let band: Vec<[f64; 2]> = highest.chain(lowest).filter(|[_, y]| y.is_finite()).collect();
+    let ceiling = resolved.ceiling.map(|level| format!("ceiling p{} {}", component.short(), p_value(level)));
+    let floor = resolved.floor.map(|level| format!("floor p{} {}", component.short(), p_value(level)));
+    let limits: Vec<String> = ceiling.into_iter().chain(floor).collect();
+    ui.label(Text::Small.rich(format!("heavy line: {}", limits.join(", ")), p.ink2));
     let short = component.short();
     let tell = |position: &HoverPosition<'_>| {
         let (HoverPosition::Elsewhere { position } | HoverPosition::NearDataPoint { position, .. }) =
@@ -194,23 +197,31 @@ fn course(story: &ShiftStory, limit: usize, ui: &mut Ui) {
         .allow_boxed_zoom(false)
         .show_background(false)
         .grid_color(p.grid)
+        .x_grid_spacer(|input| super::diagram::grid(input, 10.0))
+        .y_grid_spacer(|input| super::diagram::grid(input, 4.0))
         .x_axis_label("running hours")
         .y_axis_label(format!("p{}", component.short()))
         .y_axis_formatter(|mark, _| fixed(-mark.value, 1))
         .label_formatter(tell)
         .show(ui, |plot| {
-            plot.polygon(
-                Polygon::new("95 % band", PlotPoints::Owned(points(&band)))
-                    .fill_color(p.accent.gamma_multiply(0.15))
-                    .stroke((0.0, p.accent)),
-            );
-            let alone = Line::new("left alone", PlotPoints::Owned(points(&line(&story.alone))));
-            plot.line(alone.color(p.ink2).width(1.2).style(LineStyle::dashed_dense()));
+            for leg in legs(shown) {
+                let x: Vec<f64> = leg.iter().map(|at| at.hour).collect();
+                let low: Vec<f64> = leg.iter().map(|at| at.metals[limit].least_95).collect();
+                let high: Vec<f64> = leg.iter().map(|at| at.metals[limit].most_95).collect();
+                plot.add(
+                    FilledArea::new("95 % band", &x, &low, &high).fill_color(p.accent.gamma_multiply(0.2)),
+                );
+            }
+            for leg in legs(&story.alone) {
+                let alone = Line::new("left alone", line(leg, limit));
+                plot.line(alone.color(p.ink2).width(1.2).style(LineStyle::dashed_dense()));
+            }
             if let Some(plan) = &story.plan {
-                let held = Line::new("with additions", PlotPoints::Owned(points(&line(&plan.forecast))));
-                plot.line(held.color(p.accent).width(2.4));
+                for leg in legs(&plan.forecast) {
+                    plot.line(Line::new("with additions", line(leg, limit)).color(p.accent).width(2.4));
+                }
                 for top_up in &plan.top_ups {
-                    plot.vline(VLine::new("addition", top_up.hour).color(p.accent_soft).width(1.0));
+                    plot.vline(VLine::new("addition", top_up.hour).color(p.accent).width(1.0));
                 }
             }
             for (name, level) in [("ceiling", resolved.ceiling), ("floor", resolved.floor)] {
@@ -221,6 +232,11 @@ fn course(story: &ShiftStory, limit: usize, ui: &mut Ui) {
         });
 }
 
-fn points(values: &[[f64; 2]]) -> Vec<egui_plot::PlotPoint> {
-    values.iter().map(|[x, y]| egui_plot::PlotPoint::new(*x, *y)).collect()
+/// The stretches between additions: where something is added there are two moments of the same hour.
+fn legs(forecast: &Forecast) -> impl Iterator<Item = &[TimePoint]> {
+    forecast.points.chunk_by(|before, after| before.hour < after.hour)
+}
+
+fn line(leg: &[TimePoint], limit: usize) -> PlotPoints<'static> {
+    leg.iter().map(|at| [at.hour, at.metals[limit].log10_free]).collect()
 }
