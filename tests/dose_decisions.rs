@@ -143,3 +143,24 @@ fn no_ph_of_the_range_is_worse_with_confidence_than_the_assessment_says() {
         assert!(said <= worst + 0.05, "{}: {said} against {worst}", demo.file);
     }
 }
+
+/// Whatever agent is asked for: a dose that is said to hold with confidence does so in its own assessment.
+#[test]
+fn a_dose_found_with_confidence_is_assessed_so_for_many_agents() {
+    for demo in DEMOS {
+        let project = demo.project().unwrap();
+        for product in
+            ["edta-na4-39", "hedta-na3-41", "citric-mono", "nta-na3-40", "glda-na4-47", "hedp-60", "tea-85"]
+        {
+            let mut other = project.clone();
+            other.agents[0].product = product.to_owned();
+            let Ok(bath) = Bath::resolve(&other) else { continue };
+            let Some(found) = search(&bath, 0).unwrap().found else { continue };
+            let excess = match found.hold {
+                Hold::Sure => found.assessment.excess_95(),
+                _ => found.assessment.excess(),
+            };
+            assert!(excess <= 1e-6, "{} with {product} at {}: {excess}", demo.file, found.dose_g_l);
+        }
+    }
+}

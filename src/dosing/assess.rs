@@ -104,6 +104,13 @@ pub struct WorstPlaces {
     pub at_edge: bool,
 }
 
+/// A place that is asked for uncertainties, with the walls it is asked for and their excess.
+struct Asked {
+    place: Place,
+    at_edge: bool,
+    walls: Vec<(usize, f64)>,
+}
+
 impl<'a> Assessor<'a> {
     /// Prepares the operating window of a bath.
     ///
@@ -201,7 +208,7 @@ impl<'a> Assessor<'a> {
             })
             .collect();
         // Each place is solved once for all the walls that it is near the worst of.
-        let mut asked: Vec<(Place, bool, Vec<(usize, f64)>)> = Vec::new();
+        let mut asked: Vec<Asked> = Vec::new();
         for (wall, worst) in found.iter().enumerate() {
             let reach = worst.excess - CONFIDENCE_REACH;
             let asked_for = |(_, score): &(Place, f64)| worst.excess > FAR && *score > reach;
@@ -211,16 +218,16 @@ impl<'a> Assessor<'a> {
             let inner = std::iter::once((worst.plain, worst.excess)).chain(near);
             let edges = survey.edges_of(wall).filter(asked_for);
             for ((place, score), at_edge) in inner.map(|p| (p, false)).chain(edges.map(|p| (p, true))) {
-                match asked.iter_mut().find(|(known, ..)| *known == place) {
-                    Some((_, known_edge, walls)) => {
-                        *known_edge |= at_edge;
-                        walls.push((wall, score));
+                match asked.iter_mut().find(|known| known.place == place) {
+                    Some(known) => {
+                        known.at_edge |= at_edge;
+                        known.walls.push((wall, score));
                     }
-                    None => asked.push((place, at_edge, vec![(wall, score)])),
+                    None => asked.push(Asked { place, at_edge, walls: vec![(wall, score)] }),
                 }
             }
         }
-        for (place, at_edge, walls) in asked {
+        for Asked { place, at_edge, walls } in asked {
             let wanted: Vec<Value> = walls.iter().map(|(wall, _)| values[*wall]).collect();
             let sigmas = self.places.sigmas(dosed, &place, &wanted)?;
             for ((wall, score), sigma) in walls.into_iter().zip(sigmas) {

@@ -1,7 +1,7 @@
 //! Doses judged at the few places of the operating window that matter, which are found as the search goes on.
 
 use super::assess::{Assessor, CONFIDENCE_95, CONFIDENCE_REACH};
-use super::places::{Objective, Place};
+use super::places::{FAR, Objective, Place};
 use super::search::Hold;
 use crate::bath::{Bath, Corrected};
 use crate::equilibrium::{EquilibriumError, Value};
@@ -148,7 +148,9 @@ impl<'a, 'b> Judge<'a, 'b> {
         }
         let walls = self.objectives.len();
         for (scores, place) in self.scores.chunks_exact(walls).zip(&places) {
-            let near = |score: &f64| *score > sample.plain - CONFIDENCE_REACH && score.is_finite();
+            // A wall behind the nearest can be the first with confidence, when its uncertainty is the larger.
+            let reach = FAR.min(sample.plain - CONFIDENCE_REACH);
+            let near = |score: &f64| *score > reach && score.is_finite();
             let near: Vec<usize> = (0..walls).filter(|wall| near(&scores[*wall])).collect();
             if near.is_empty() {
                 continue;

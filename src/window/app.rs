@@ -211,10 +211,10 @@ impl App {
                         self.thorough = Some(thorough);
                     }
                 }
-                Answer::Told(told) => {
-                    if self.told.as_ref().is_none_or(|old| told.generation >= old.generation) {
-                        self.told = Some(told);
-                    }
+                Answer::Told(told)
+                    if self.told.as_ref().is_none_or(|old| told.generation >= old.generation) =>
+                {
+                    self.told = Some(told);
                 }
                 _ => {}
             }

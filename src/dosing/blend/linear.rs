@@ -58,12 +58,11 @@ fn corner(chosen: &[usize], rows: &[Row], n: usize) -> Option<Vec<f64>> {
             return None;
         }
         matrix.swap(column, pivot);
-        for row in column + 1..n {
-            let factor = matrix[row][column] / matrix[column][column];
-            for k in column..=n {
-                let part = factor * matrix[column][k];
-                matrix[row][k] -= part;
-            }
+        let (above, below) = matrix.split_at_mut(column + 1);
+        let pivot = &above[column];
+        for row in below {
+            let factor = row[column] / pivot[column];
+            row.iter_mut().zip(pivot).skip(column).for_each(|(value, known)| *value -= factor * known);
         }
     }
     let mut x = vec![0.0; n];

@@ -2,7 +2,7 @@
 
 use super::super::assess::CONFIDENCE_95;
 use super::super::judge::{Judge, Level, TOUCH};
-use super::super::places::{Objective, Place};
+use super::super::places::{FAR, Objective, Place};
 use crate::bath::Wall;
 use crate::equilibrium::{EquilibriumError, LN_10};
 
@@ -41,12 +41,13 @@ pub(super) fn constraints(
         doses[agent] += step;
         moved.push((judge.assessor.places.dose(&doses)?, step));
     }
+    let reach = FAR.min(sample.plain - NEAR);
     let mut found = Vec::new();
     let mut scores = Vec::new();
     for place in judge.places_for(&sample)? {
         scores.clear();
         judge.assessor.places.score(&sample.dosed, &place, &judge.objectives, &mut scores)?;
-        let near: Vec<usize> = (0..scores.len()).filter(|&wall| scores[wall] > sample.plain - NEAR).collect();
+        let near: Vec<usize> = (0..scores.len()).filter(|&wall| scores[wall] > reach).collect();
         if near.is_empty() {
             continue;
         }
