@@ -66,7 +66,7 @@ impl TopUpPlan {
     }
 }
 
-/// Plans the top-ups of one agent.
+/// Plans the top-ups of one agent of the bath, by its number.
 ///
 /// # Errors
 /// [`EquilibriumError`] for an ill-posed bath.

@@ -38,7 +38,7 @@ pub fn to_svg(running: &Running, alone: &Forecast, plan: &TopUpPlan) -> String {
         running.shifts,
         plain(hours / running.shifts as f64, 2)
     );
-    let key = "solid: with additions · shaded: operating range, paler with 95 % confidence · dashed: left alone, dotted its 95 % edge, dot where that is crossed";
+    let key = "solid: with additions · shaded: operating range, paler: 95 % · dashed: left alone, dotted: its 95 % edge";
     let reading = match alone.crossings.first() {
         Some(crossing) => format!("Left alone, {}", crossing_words(running, crossing)),
         None => "Left alone, every limit holds".to_owned(),
@@ -247,7 +247,9 @@ fn above(paper: &mut Paper, pane: &Pane, plan: &TopUpPlan) {
         } else {
             paper.arrow_down((x, pane.top - 2.0), ACCENT);
         }
-        paper.line((x, pane.top), (x, BOTTOM), ACCENT, 0.7);
+        if written {
+            paper.line((x, pane.top), (x, BOTTOM), ACCENT, 0.7);
+        }
         let width = look.width(&words);
         let start = (x - width / 2.0).clamp(pane.left, pane.right - width);
         if written && start > end + 6.0 {
