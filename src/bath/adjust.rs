@@ -67,6 +67,8 @@ const ROOT_WIDTH: f64 = 1e-11;
 /// The same of the secant that goes before it; a width of the last step.
 const SECANT_STEPS: usize = 12;
 const SECANT_WIDTH: f64 = 1e-6;
+/// Steps from the last correction before a whole search for the next.
+const SHORT_STEPS: usize = 4;
 
 /// The hydrogen balance of a bath at its set point, kept for many doses.
 #[derive(Clone, Debug)]
@@ -87,6 +89,7 @@ struct Balance<'a> {
     unlisted: f64,
     /// The last root over what the hydrogen of the product alone would ask for: close to that of the next dose.
     share: f64,
+    last: Option<Last>,
 }
 
 impl<'a> Corrector<'a> {
@@ -106,6 +109,7 @@ impl<'a> Corrector<'a> {
             proton,
             unlisted: 0.0,
             share: 1.0,
+            last: None,
         };
         balance.unlisted = balance.held(&bath.contents, ph)? - bath.contents[proton];
         Ok(Self { bath, balance: Some(balance) })
@@ -156,7 +160,93 @@ impl<'a> Corrector<'a> {
     }
 }
 
+impl<'a> Corrector<'a> {
+    /// Totals with doses in g/L and with the acid or alkali that brings the pH back, and the volume that they made of one
+    /// litre: [`Corrector::corrected`] for a search, which starts from the last doses and asks no name of a product.
+    ///
+    /// # Errors
+    /// [`EquilibriumError`] for an ill-posed bath.
+    pub fn balanced(&mut self, doses: &[f64]) -> Result<(Vec<f64>, f64), EquilibriumError> {
+        if let Some(balance) = self.balance.as_mut().filter(|_| doses.iter().any(|dose| *dose != 0.0)) {
+            if let Some(Mixed { totals, dilution }) = balance.near_last(self.bath, doses)? {
+                return Ok((totals, dilution));
+            }
+            let before = self.bath.mixed(doses, None);
+            let wanted = balance.wanted(&before, balance.ph)?;
+            let alkali = wanted < 0.0;
+            let adjuster = if alkali { &self.bath.alkali } else { &self.bath.acid };
+            if wanted != 0.0
+                && let Some(grams) = balance.root(self.bath, doses, adjuster, wanted)?
+            {
+                balance.remember(alkali, doses, grams, wanted / -grams);
+                let Mixed { totals, dilution } = self.bath.mixed(doses, Some((adjuster, grams)));
+                return Ok((totals, dilution));
+            }
+            balance.last = None;
+        }
+        let Mixed { totals, dilution } = self.bath.mixed(doses, None);
+        Ok((totals, dilution))
+    }
+}
+
+/// The correction of the last doses, from which the next ones start.
+#[derive(Clone, Debug)]
+struct Last {
+    alkali: bool,
+    doses: Vec<f64>,
+    grams: f64,
+    /// Change of what is wanted per gram.
+    slope: f64,
+    /// Change of the grams per gram of each agent, as far as it was seen.
+    per_dose: Vec<f64>,
+}
+
 impl Balance<'_> {
+    /// The mixture of doses near the last ones, by a step or two from what these needed; `None` where that does not lead
+    /// there: the first time, or where acid takes the place of alkali.
+    fn near_last(&mut self, bath: &Bath, doses: &[f64]) -> Result<Option<Mixed>, EquilibriumError> {
+        let Some(last) = self.last.take() else { return Ok(None) };
+        let adjuster = if last.alkali { &bath.alkali } else { &bath.acid };
+        let moved = doses.iter().zip(&last.doses).zip(&last.per_dose);
+        let change: f64 = moved.map(|((now, then), per_dose)| per_dose * (now - then)).sum();
+        let (mut grams, mut slope) = (last.grams + change, last.slope);
+        let mut before: Option<(f64, f64)> = None;
+        for _ in 0..SHORT_STEPS {
+            if !(grams > 0.0 && grams <= MOST_G_L) {
+                return Ok(None);
+            }
+            let f = self.wanted(&bath.mixed(doses, Some((adjuster, grams))), self.ph)?;
+            if let Some((x, g)) = before.filter(|(x, _)| *x != grams) {
+                slope = (f - g) / (grams - x);
+            }
+            let next = grams - f / slope;
+            if next <= 0.0 || next.is_nan() {
+                return Ok(None);
+            }
+            if (next - grams).abs() <= SECANT_WIDTH * next {
+                self.last = Some(last);
+                self.remember(adjuster.product == bath.alkali.product, doses, next, slope);
+                return Ok(Some(bath.mixed(doses, Some((adjuster, next)))));
+            }
+            before = Some((grams, f));
+            grams = next;
+        }
+        Ok(None)
+    }
+
+    /// Keeps a correction, and what it says of the agent that alone was moved.
+    fn remember(&mut self, alkali: bool, doses: &[f64], grams: f64, slope: f64) {
+        let mut per_dose = vec![0.0; doses.len()];
+        if let Some(last) = self.last.take().filter(|last| last.alkali == alkali) {
+            per_dose = last.per_dose;
+            let moved: Vec<usize> = (0..doses.len()).filter(|&i| doses[i] != last.doses[i]).collect();
+            if let [agent] = moved[..] {
+                per_dose[agent] = (grams - last.grams) / (doses[agent] - last.doses[agent]);
+            }
+        }
+        self.last = Some(Last { alkali, doses: doses.to_vec(), grams, slope, per_dose });
+    }
+
     /// Moles of H⁺ per litre that given totals hold at a pH.
     fn held(&mut self, totals: &[f64], ph: f64) -> Result<f64, EquilibriumError> {
         self.points.solve_into(&self.constants, totals, Some(ph), &mut self.solution)?;
@@ -308,7 +398,7 @@ impl Bath {
 
 #[cfg(test)]
 mod tests {
-    use crate::bath::{Adjust, Air, Bath, Demo};
+    use crate::bath::{Adjust, Air, Bath, Corrector, Demo};
 
     fn copper_strike(alkali: &str) -> Bath {
         let mut project = Demo::named("copper_strike.ron").unwrap().project().unwrap();
@@ -341,6 +431,28 @@ mod tests {
         let adjustment = bath.corrected(&doses).unwrap().adjustment.expect("an acid agent calls for alkali");
         let ph = bath.ph_after(&doses, Some(&adjustment)).unwrap().unwrap();
         assert!((ph - bath.ph_set().unwrap()).abs() < 1e-6, "{ph}");
+    }
+
+    #[test]
+    fn a_walk_of_doses_is_balanced_as_each_of_them_alone() {
+        for alkali in ["koh-45", "ammonia-25"] {
+            let bath = copper_strike(alkali);
+            let mut corrector = Corrector::new(&bath).unwrap();
+            for step in [1.0, 1.5, 7.0, 40.0, 39.9, 0.0, 0.01, 80.0] {
+                for other in [0.0, 2.0] {
+                    let doses = [step, other];
+                    let (totals, dilution) = corrector.balanced(&doses).unwrap();
+                    let alone = bath.corrected(&doses).unwrap();
+                    assert!((dilution - alone.dilution).abs() < 1e-9);
+                    for (found, expected) in totals.iter().zip(&alone.totals) {
+                        assert!(
+                            (found - expected).abs() < 1e-8 * expected.abs().max(1e-3),
+                            "{alkali} {doses:?}"
+                        );
+                    }
+                }
+            }
+        }
     }
 
     #[test]

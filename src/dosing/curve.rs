@@ -9,7 +9,7 @@ use crate::equilibrium::EquilibriumError;
 
 /// Evenly spaced doses sampled before crossings are refined, and halvings of the first of them towards zero, where free
 /// metal falls by orders of magnitude.
-const SAMPLES: usize = 32;
+const SAMPLES: usize = 24;
 const HALVINGS: usize = 6;
 /// Width of a crossing as a share of the largest dose.
 const WIDTH: f64 = 1e-7;

@@ -133,15 +133,22 @@ impl<'a, 'b> Judge<'a, 'b> {
         let (first, first_line) = sample.judged;
         sample.judged = (self.places.len(), self.lines.len());
         let mut places = self.places[first..].to_vec();
-        for line in &self.lines[first_line..] {
-            places.extend(self.assessor.places.edges_along(&sample.dosed, line)?);
-        }
         self.scores.clear();
         for place in &places {
             self.assessor.places.score(&sample.dosed, place, &self.objectives, &mut self.scores)?;
         }
-        let highest = self.scores.iter().copied().fold(f64::NEG_INFINITY, f64::max);
-        sample.plain = sample.plain.max(highest);
+        let highest = |scores: &[f64]| scores.iter().copied().fold(f64::NEG_INFINITY, f64::max);
+        sample.plain = sample.plain.max(highest(&self.scores));
+        // Lines only tell of confidence, which nobody asks for where the plain numbers fail.
+        if sample.plain - TOUCH <= 0.0 {
+            for line in &self.lines[first_line..] {
+                for place in self.assessor.places.edges_along(&sample.dosed, line)? {
+                    self.assessor.places.score(&sample.dosed, &place, &self.objectives, &mut self.scores)?;
+                    places.push(place);
+                }
+            }
+            sample.plain = sample.plain.max(highest(&self.scores));
+        }
         if sample.plain - TOUCH > 0.0 {
             sample.sure = sample.plain;
             return Ok(());

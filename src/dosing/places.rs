@@ -124,7 +124,8 @@ impl<'a> Places<'a> {
     /// # Errors
     /// [`EquilibriumError`] for an ill-posed bath.
     pub fn dose(&mut self, doses: &[f64]) -> Result<Corrected, EquilibriumError> {
-        self.corrector.corrected(doses)
+        let (totals, dilution) = self.corrector.balanced(doses)?;
+        Ok(Corrected { totals, dilution, adjustment: None, failure: None })
     }
 
     /// Gives a place a solver of its own.

@@ -1,7 +1,7 @@
 //! Free metal, or how far over the nearest wall the bath is, over pH and the dose of one agent at the set temperature.
 
 use super::contour::{Grid, contour};
-use crate::bath::{Bath, Corrected, Corrector, Points, Solids, Wall};
+use crate::bath::{Bath, Corrector, Points, Solids, Wall};
 use crate::equilibrium::{Equilibrium, EquilibriumError, LN_10};
 
 /// What a map shows.
@@ -118,7 +118,7 @@ impl<'a> Painter<'a> {
     /// One dose over all pH values; every other row backwards, so that each point starts beside the last.
     fn row(&mut self, (agent, dose): (usize, f64), ph: &[f64], backwards: bool, values: &mut [f64]) {
         self.doses[agent] = dose;
-        let Ok(Corrected { totals, .. }) = self.corrector.corrected(&self.doses) else { return };
+        let Ok((totals, _)) = self.corrector.balanced(&self.doses) else { return };
         for step in 0..ph.len() {
             let at = if backwards { ph.len() - 1 - step } else { step };
             let Self { points, constants, solution, .. } = self;
