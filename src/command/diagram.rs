@@ -1,7 +1,7 @@
 //! `bathwright diagram`: a distribution diagram as SVG or CSV.
 
 use super::arguments::Against;
-use super::{CommandError, Outcome, choose_agent, print, write_file};
+use super::{CommandError, Outcome, choose_agent, print, write_picture};
 use crate::bath::Bath;
 use crate::study::{Axis, Basis, diagram, to_csv, to_svg};
 use std::io::Write;
@@ -32,17 +32,7 @@ pub fn run(bath: &Bath, wish: &Wish, path: &Path, out: &mut dyn Write) -> Result
     if let Some((count, error)) = drawn.gaps.as_ref().filter(|(count, _)| *count == drawn.x.len()) {
         return Err(CommandError::Option(format!("no point of {count} has an answer: {error}")));
     }
-    let text = match path.extension().and_then(|end| end.to_str()) {
-        Some("svg") => to_svg(&bath, &drawn),
-        Some("csv") => to_csv(&bath, &drawn),
-        _ => {
-            return Err(CommandError::Option(format!(
-                "--out is \"{}\": give a name that ends in .svg or .csv",
-                path.display()
-            )));
-        }
-    };
-    write_file(path, text.as_bytes())?;
+    write_picture(path, || to_svg(&bath, &drawn), || to_csv(&bath, &drawn))?;
     print(out, &format!("{} written\n", path.display()))?;
     Ok(Outcome::Done)
 }

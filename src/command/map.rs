@@ -1,7 +1,7 @@
 //! `bathwright map`: free metal, or the share of the nearest limit, over pH and dose as SVG or CSV.
 
 use super::diagram::{basis, ph_ends};
-use super::{CommandError, Outcome, choose_agent, print, write_file};
+use super::{CommandError, Outcome, choose_agent, print, write_picture};
 use crate::bath::Bath;
 use crate::study::{MapArea, MapOf, map, map_to_csv, map_to_svg};
 use std::io::Write;
@@ -29,17 +29,7 @@ pub fn run(
     if drawn.span().is_none() {
         return Err(CommandError::Option("no point of the map has an answer".to_owned()));
     }
-    let text = match path.extension().and_then(|end| end.to_str()) {
-        Some("svg") => map_to_svg(&bath, &drawn),
-        Some("csv") => map_to_csv(&bath, &drawn),
-        _ => {
-            return Err(CommandError::Option(format!(
-                "--out is \"{}\": give a name that ends in .svg or .csv",
-                path.display()
-            )));
-        }
-    };
-    write_file(path, text.as_bytes())?;
+    write_picture(path, || map_to_svg(&bath, &drawn), || map_to_csv(&bath, &drawn))?;
     print(out, &format!("{} written\n", path.display()))?;
     Ok(Outcome::Done)
 }

@@ -185,3 +185,22 @@ fn write_file(path: &Path, bytes: &[u8]) -> Result<(), CommandError> {
     crate::bath::replace_file(path, bytes)
         .map_err(|source| CommandError::Write { path: path.display().to_string(), source })
 }
+
+/// Writes a picture or its table, by the ending of the path.
+fn write_picture(
+    path: &Path,
+    svg: impl FnOnce() -> String,
+    csv: impl FnOnce() -> String,
+) -> Result<(), CommandError> {
+    let text = match path.extension().and_then(|end| end.to_str()) {
+        Some("svg") => svg(),
+        Some("csv") => csv(),
+        _ => {
+            return Err(CommandError::Option(format!(
+                "--out is \"{}\": give a name that ends in .svg or .csv",
+                path.display()
+            )));
+        }
+    };
+    write_file(path, text.as_bytes())
+}

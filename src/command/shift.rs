@@ -3,7 +3,7 @@
 use super::dose::decide;
 use super::shift_json::json_text;
 use super::table::Table;
-use super::{CommandError, Outcome, choose_agent, print, write_file};
+use super::{CommandError, Outcome, choose_agent, print, write_picture};
 use crate::bath::{Bath, Running, Shift};
 use crate::dosing::share_of_limit;
 use crate::quantity::{fixed, grouped, percent, plain, significant};
@@ -47,18 +47,9 @@ pub fn run(bath: &Bath, wish: &Wish, out: &mut dyn Write) -> Result<Outcome, Com
     let holds = plan.fails_from.is_none() && plan.refused.is_none();
     let story = Story { running: &running, found_first, alone, plan };
     if let Some(path) = wish.out {
-        let text = match path.extension().and_then(|end| end.to_str()) {
-            Some("svg") => to_svg(&running, &story.alone, &story.plan),
-            Some("csv") => {
-                to_csv(&running, &[("left alone", &story.alone), ("with additions", &story.plan.forecast)])
-            }
-            _ => {
-                let shown = path.display();
-                let text = format!("--out is \"{shown}\": give a name that ends in .svg or .csv");
-                return Err(CommandError::Option(text));
-            }
-        };
-        write_file(path, text.as_bytes())?;
+        let courses = [("left alone", &story.alone), ("with additions", &story.plan.forecast)];
+        let svg = || to_svg(&running, &story.alone, &story.plan);
+        write_picture(path, svg, || to_csv(&running, &courses))?;
     }
     let told = if wish.json { format!("{:#}\n", json_text(&story)) } else { text(&story, wish.out) };
     print(out, &told)?;
