@@ -291,8 +291,18 @@ fn resolve_derived(
     match derived {
         Derived::Solid { solid, margin } => {
             let index = system.solids.iter().position(|known| known.token == *solid);
-            let fix = "no solid of this bath has this name; write it like \"CaCO3(cr)\"";
-            let index = index.ok_or_else(|| unknown("solid", solid, fix))?;
+            let of_metal = system
+                .solids
+                .iter()
+                .filter(|known| known.components.iter().any(|(i, _)| *i == component))
+                .map(|known| known.token.as_str());
+            let known = of_metal.collect::<Vec<_>>().join(", ");
+            let fix = if known.is_empty() {
+                "no solid of this metal is known in this bath; type a ceiling instead".to_owned()
+            } else {
+                format!("no solid of this bath has this name; of this metal it knows {known}")
+            };
+            let index = index.ok_or_else(|| unknown("solid", solid, &fix))?;
             if !(0.0..=5.0).contains(margin) {
                 return Err(number("margin", *margin, "give units of the saturation index between 0 and 5"));
             }
