@@ -6,7 +6,7 @@ use super::theme::{GAP, INSET, RADIUS, Text, palette};
 use super::widget::NumberField;
 use crate::bath::Shift;
 use crate::quantity::{fixed, p_value, plain, significant};
-use crate::study::shift::{Forecast, TimePoint, bail_out_words, crossing_words, events, in_shift};
+use crate::study::shift::{Forecast, TimePoint, TopUpPlan, bail_out_words, crossing_words, events, in_shift};
 use eframe::egui::{CentralPanel, Frame, Grid, Margin, Panel, ScrollArea, Ui};
 use egui_plot::{FilledArea, HLine, HoverPosition, Line, LineStyle, Plot, PlotPoints, VLine};
 
@@ -128,25 +128,13 @@ fn told(story: &ShiftStory, ui: &mut Ui) {
         if let Some(refused) = &plan.refused {
             ui.label(Text::Body.rich(refused, p.not_held));
         }
-        if plan.top_ups.is_empty() && plan.fails_from.is_none() {
+        let quiet = plan.top_ups.is_empty() && plan.bail_outs.is_empty();
+        if quiet && plan.fails_from.is_none() && plan.refused.is_none() {
             ui.label(Text::Body.rich("■ none is needed", p.held));
         }
-        Grid::new("top-ups").spacing([22.0, 5.0]).striped(true).show(ui, |ui| {
-            for heading in ["when", "measure out", "g/L", "of what is in the bath", "then"] {
-                ui.label(Text::SmallStrong.rich(heading, p.ink2));
-            }
-            ui.end_row();
-            for top_up in &plan.top_ups {
-                ui.label(in_shift(running, top_up.hour));
-                ui.label(Text::Strong.rich(&top_up.measured.amount, p.ink));
-                ui.label(significant(top_up.dose_g_l, 3));
-                ui.label(crate::quantity::percent(top_up.share));
-                ui.label(top_up.adjustment.as_ref().map_or(String::new(), |(adjustment, measured)| {
-                    format!("{} {}", measured.amount, adjustment.product.name)
-                }));
-                ui.end_row();
-            }
-        });
+        if !plan.top_ups.is_empty() {
+            top_ups(story, plan, ui);
+        }
         for bail_out in &plan.bail_outs {
             let words = bail_out_words(running, plan.agent, bail_out);
             ui.label(Text::Body.rich(words, p.unsure));
@@ -154,6 +142,28 @@ fn told(story: &ShiftStory, ui: &mut Ui) {
         if let Some(hour) = plan.fails_from {
             let words = format!("◆ from {} nothing that was tried holds", in_shift(running, hour));
             ui.label(Text::Body.rich(words, p.not_held));
+        }
+    });
+}
+
+/// When to add how much.
+fn top_ups(story: &ShiftStory, plan: &TopUpPlan, ui: &mut Ui) {
+    let p = palette(ui);
+    let running = &story.running;
+    Grid::new("top-ups").spacing([22.0, 5.0]).striped(true).show(ui, |ui| {
+        for heading in ["when", "measure out", "g/L", "of what is in the bath", "then"] {
+            ui.label(Text::SmallStrong.rich(heading, p.ink2));
+        }
+        ui.end_row();
+        for top_up in &plan.top_ups {
+            ui.label(in_shift(running, top_up.hour));
+            ui.label(Text::Strong.rich(&top_up.measured.amount, p.ink));
+            ui.label(significant(top_up.dose_g_l, 3));
+            ui.label(crate::quantity::percent(top_up.share));
+            ui.label(top_up.adjustment.as_ref().map_or(String::new(), |(adjustment, measured)| {
+                format!("{} {}", measured.amount, adjustment.product.name)
+            }));
+            ui.end_row();
         }
     });
 }
