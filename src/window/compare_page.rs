@@ -6,7 +6,11 @@ use super::story::{Story, Wanted};
 use super::theme::{GAP, INSET, RADIUS, Text, palette};
 use crate::chemistry::{Catalogue, Role};
 use crate::study::compare::{Better, Comparison, Row};
-use eframe::egui::{CentralPanel, ComboBox, Frame, Grid, Margin, RichText, ScrollArea, Ui};
+use eframe::egui::{CentralPanel, ComboBox, Frame, Grid, Label, Margin, RichText, ScrollArea, Ui};
+
+/// Width that the columns before the last take at most, and the least that the last is left, points.
+const OTHER_COLUMNS: f32 = 1070.0;
+const NARROWEST_WHY: f32 = 180.0;
 
 /// Draws the page.
 pub fn show(app: &mut App, ui: &mut Ui) {
@@ -87,6 +91,7 @@ fn products(catalogue: &Catalogue) -> Vec<(String, String)> {
 fn table(comparison: &Comparison, ui: &mut Ui) {
     let p = palette(ui);
     let (a, b) = comparison.names();
+    let why_width = (ui.available_width() - OTHER_COLUMNS).max(NARROWEST_WHY);
     let card = Frame::new().fill(p.panel).corner_radius(RADIUS).inner_margin(Margin::same(12));
     card.show(ui, |ui| {
         Grid::new("comparison").num_columns(5).spacing([22.0, 7.0]).striped(true).show(ui, |ui| {
@@ -95,7 +100,7 @@ fn table(comparison: &Comparison, ui: &mut Ui) {
             }
             ui.end_row();
             for row in &comparison.rows {
-                line(row, (a, b), ui);
+                line(row, (a, b), why_width, ui);
             }
         });
     });
@@ -106,7 +111,7 @@ fn table(comparison: &Comparison, ui: &mut Ui) {
     ui.label(Text::Small.rich("Effluent: your permit rules.", p.ink2));
 }
 
-fn line(row: &Row, (a, b): (&str, &str), ui: &mut Ui) {
+fn line(row: &Row, (a, b): (&str, &str), why_width: f32, ui: &mut Ui) {
     let p = palette(ui);
     let label = if row.unit.is_empty() { row.label.clone() } else { format!("{}, {}", row.label, row.unit) };
     ui.label(Text::Body.rich(label, p.ink));
@@ -123,6 +128,9 @@ fn line(row: &Row, (a, b): (&str, &str), ui: &mut Ui) {
         Better::Unranked => ("–", p.ink2),
     };
     ui.label(Text::Body.rich(who, look));
-    ui.label(Text::Small.rich(&row.why, p.ink2));
+    ui.scope(|ui| {
+        ui.set_max_width(why_width);
+        ui.add(Label::new(Text::Small.rich(&row.why, p.ink2)).wrap());
+    });
     ui.end_row();
 }
