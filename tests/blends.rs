@@ -215,3 +215,22 @@ fn bounds_are_kept_and_what_is_missing_is_named() {
     let bath = Bath::resolve(&project).unwrap();
     assert_eq!(blend(&bath, &[0], Aim::Lightest), Err(BlendError::NoWall));
 }
+
+#[test]
+fn a_floor_that_no_dose_can_reach_has_no_blend() {
+    let mut project = demo("hard_water_cleaner.ron");
+    project.contents.push(bathwright::bath::Content {
+        what: "nickel".into(),
+        amount: bathwright::quantity::Amount::parse("0 g/L").unwrap(),
+        trust: bathwright::bath::Trust::Assumed,
+        note: String::new(),
+    });
+    project.limits.push(bathwright::bath::Limit {
+        metal: "nickel".into(),
+        floor: Some(Level::P(6.0)),
+        ..Default::default()
+    });
+    let bath = Bath::resolve(&project).unwrap();
+    assert_eq!(blend(&bath, &[0, 1], Aim::Lightest).unwrap(), None);
+    assert!(search(&bath, 0).unwrap().found.is_none());
+}

@@ -161,7 +161,8 @@ fn starts(judge: &mut Judge, goal: &Goal) -> Result<Vec<Vec<f64>>, EquilibriumEr
     let n = goal.agents.len();
     let shares = GRIDS[n - 1];
     let mut holding: Vec<(f64, Vec<bool>, Vec<f64>)> = Vec::new();
-    let mut nearest = (f64::INFINITY, Vec::new());
+    // Where no dose is nearer than another, as with a floor for a metal that is not there, nothing is as good as any.
+    let mut nearest = (f64::INFINITY, at_shares(judge.bath, goal, &vec![0.0; n]));
     // Odometer over the grid, back and forth so that neighbours follow each other.
     for number in 0..shares.len().pow(n as u32) {
         let mut rest = number;
