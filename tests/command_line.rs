@@ -169,6 +169,16 @@ fn maps_are_written_as_svg_and_csv() {
     assert_eq!(run!("map", &demo("copper_strike.ron"), "--out", "map.doc").status.code(), Some(2));
 }
 
+/// The descaler has no typed ceiling: its wall is a solid.
+#[test]
+fn a_bath_whose_only_wall_follows_from_chemistry_is_compared_and_blended_too() {
+    let file = demo("citric_descaler.ron");
+    let output = run!("compare", &file, "--with", "citric-mono", "--and", "edta-na4-39");
+    assert_eq!(output.status.code(), Some(0), "{}", text(&output.stderr));
+    let output = run!("dose", &file, "--blend");
+    assert_eq!(output.status.code(), Some(0), "{}", text(&output.stderr));
+}
+
 #[test]
 fn a_blend_is_found_and_says_what_binds_it() {
     let output = run!("dose", &demo("hard_water_cleaner.ron"), "--blend", "lightest", "--json");

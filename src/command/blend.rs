@@ -34,7 +34,7 @@ fn aim_words(aim: Aim) -> &'static str {
 /// Price or weight per 1000 L, as people compare it.
 fn per_1000_l(aim: Aim, per_litre: f64) -> String {
     match aim {
-        Aim::Cheapest => format!("{} (price list) per 1000 L", significant(1000.0 * per_litre, 3)),
+        Aim::Cheapest => format!("{} at list prices per 1000 L", significant(1000.0 * per_litre, 3)),
         Aim::Lightest => format!("{} kg per 1000 L", significant(per_litre, 3)),
     }
 }

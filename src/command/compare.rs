@@ -1,7 +1,7 @@
 //! `bathwright compare`: two agents side by side at equal result.
 
 use super::table::Table;
-use super::{CommandError, Outcome, print};
+use super::{CommandError, Outcome, needs_walls, print};
 use crate::bath::{Bath, BathError};
 use crate::dosing::Hold;
 use crate::study::compare::{Better, Cell, Comparison, Row, Side, compare};
@@ -15,11 +15,7 @@ pub fn run(
     path: &str,
     out: &mut dyn Write,
 ) -> Result<Outcome, CommandError> {
-    if bath.limits.iter().all(|limit| limit.ceiling.is_none() && limit.floor.is_none()) {
-        return Err(CommandError::Option(
-            "limits is empty: set a ceiling for a free metal, then compare agents".into(),
-        ));
-    }
+    needs_walls(bath, "compare agents")?;
     let a = product(bath, "--with", names.0)?;
     let b = product(bath, "--and", names.1)?;
     if a == b {

@@ -2,7 +2,7 @@
 
 use super::solve::{at_set_point, heading, json_object};
 use super::table::Table;
-use super::{CommandError, Outcome, choose_agent, print};
+use super::{CommandError, Outcome, choose_agent, needs_walls, print};
 use crate::bath::{Bath, Wall};
 use crate::dosing::{
     Assessment, Change, Hold, Plan, Reason, Sampled, Search, Verdict, place_words, plan, sample, search,
@@ -37,11 +37,7 @@ const SEED: u64 = 1;
 /// Searches, rounds, plans and judges.
 pub fn decide(bath: &Bath, name: Option<&str>) -> Result<Decision, CommandError> {
     let (mut bath, agent) = choose_agent(bath, name)?;
-    if bath.walls().is_empty() {
-        return Err(CommandError::Option(
-            "limits is empty: set a ceiling for a free metal, then find the dose".into(),
-        ));
-    }
+    needs_walls(&bath, "find the dose")?;
     let search = search(&bath, agent)?;
     let reason = if search.found.is_none() { Some(why_none(&bath, &search)?) } else { None };
     let mut doses = bath.doses();

@@ -1,7 +1,7 @@
 //! `bathwright map`: free metal, or the share of the nearest limit, over pH and dose as SVG or CSV.
 
 use super::diagram::{basis, ph_ends};
-use super::{CommandError, Outcome, choose_agent, print, write_picture};
+use super::{CommandError, Outcome, choose_agent, needs_walls, print, write_picture};
 use crate::bath::Bath;
 use crate::study::{MapArea, MapOf, map, map_to_csv, map_to_svg};
 use std::io::Write;
@@ -22,8 +22,8 @@ pub fn run(
         Some("limit") => MapOf::Excess,
         of => MapOf::Free(basis(&bath, of)?.0),
     };
-    if of == MapOf::Excess && bath.walls().is_empty() {
-        return Err(CommandError::Option("limits is empty: set a ceiling for a free metal first".into()));
+    if of == MapOf::Excess {
+        needs_walls(&bath, "map it")?;
     }
     let drawn = map(&bath, of, MapArea { agent, ph: ph_ends(&bath), points: POINTS })?;
     if drawn.span().is_none() {

@@ -186,6 +186,16 @@ fn write_file(path: &Path, bytes: &[u8]) -> Result<(), CommandError> {
         .map_err(|source| CommandError::Write { path: path.display().to_string(), source })
 }
 
+/// Refuses a bath that has nothing to hold; `then` says what was wanted.
+fn needs_walls(bath: &Bath, then: &str) -> Result<(), CommandError> {
+    if bath.walls().is_empty() {
+        return Err(CommandError::Option(format!(
+            "limits is empty: set a ceiling for a free metal, then {then}"
+        )));
+    }
+    Ok(())
+}
+
 /// Writes a picture or its table, by the ending of the path.
 fn write_picture(
     path: &Path,

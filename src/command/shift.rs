@@ -3,7 +3,7 @@
 use super::dose::decide;
 use super::shift_json::json_text;
 use super::table::Table;
-use super::{CommandError, Outcome, choose_agent, print, write_picture};
+use super::{CommandError, Outcome, choose_agent, needs_walls, print, write_picture};
 use crate::bath::{Bath, Running, Shift};
 use crate::dosing::share_of_limit;
 use crate::quantity::{fixed, grouped, percent, plain, significant};
@@ -63,10 +63,7 @@ fn in_project(source: crate::bath::BathError) -> CommandError {
 /// The bath to begin with: as the project doses it when that holds, else with the dose that is found.
 fn begin(bath: &Bath, shift: &Shift, agent: Option<&str>) -> Result<(Bath, usize, bool), CommandError> {
     let (chosen, number) = choose_agent(bath, agent)?;
-    if chosen.limits.iter().all(|limit| limit.ceiling.is_none() && limit.floor.is_none()) {
-        let text = "limits is empty: set a ceiling for a free metal, then look ahead";
-        return Err(CommandError::Option(text.to_owned()));
-    }
+    needs_walls(&chosen, "look ahead")?;
     let short = Shift { shifts: 1, hours: 1.0, ..shift.clone() };
     let first = forecast(&chosen.running(&short).map_err(in_project)?)?;
     if first.points[0].excess(true) <= 0.0 {

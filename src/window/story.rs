@@ -2,7 +2,7 @@
 //! the rinse behind.
 
 use super::answer::Request;
-use crate::bath::{Bath, BathError, Running, Wall};
+use crate::bath::{Bath, BathError, Running};
 use crate::study::compare::{Comparison, compare};
 use crate::study::rinse::{RinseStudy, rinse};
 use crate::study::shift::{Forecast, TopUpPlan, forecast, plan_top_ups};
@@ -72,8 +72,7 @@ fn of(bath: &Bath, wanted: &Wanted) -> Result<Story, BathError> {
             let replenish = bath.project.shift.replenish;
             // Where the start holds only by plain numbers, that is all a plan can keep.
             let sure = alone.points.first().is_some_and(|start| start.excess(true) <= 0.0);
-            let has_walls = bath.walls().iter().any(|wall| !matches!(wall, Wall::Derived(_)));
-            let plan = match agent.filter(|_| has_walls) {
+            let plan = match agent.filter(|_| !bath.walls().is_empty()) {
                 Some(agent) => Some(plan_top_ups(&running, agent, replenish, sure)?),
                 None => None,
             };
