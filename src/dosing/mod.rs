@@ -21,7 +21,7 @@ pub use blend::{Aim, Binding, Blend, BlendError, MOST_AGENTS, Worsening, blend};
 pub use ledger::{Holder, LedgerEntry, ledger};
 pub use measure::{Direction, Measured, ROUNDING_FLAG, measure};
 pub use places::Place;
-pub use plan::{Addition, Plan, Step, acid_refused, plan};
+pub use plan::{Addition, Plan, Step, acid_refused, addition_cap, plan};
 pub use reason::{Change, Reason, why_none};
 pub use sampling::{Sampled, sample};
 pub use search::{Band, Found, Hold, Search, search};

@@ -129,7 +129,8 @@ pub fn acid_refused(bath: &Bath, product: &Product) -> Option<String> {
     ))
 }
 
-fn addition_cap(bath: &Bath) -> f64 {
+/// Largest share of an agent in the bath that one addition may bring.
+pub fn addition_cap(bath: &Bath) -> f64 {
     bath.project.sheet.addition_cap_percent.map_or(ADDITION_CAP, |percent| percent / 100.0)
 }
 

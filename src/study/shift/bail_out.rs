@@ -1,11 +1,11 @@
 //! Bail-out: when no addition holds the bath any more, some of it is taken out and replaced, with fresh bath or with
 //! water, and the agent that went with it is dosed again.
 
-use super::planner::{Planner, addition_cap};
+use super::planner::Planner;
 use super::stirred::Contents;
 use super::walk::Change;
 use crate::bath::{Adjustment, Bath, Running, Wall};
-use crate::dosing::{Direction, Measured, measure};
+use crate::dosing::{Direction, Measured, addition_cap, measure};
 use crate::equilibrium::EquilibriumError;
 
 /// Parts of the volume that are tried.

@@ -9,10 +9,6 @@ use crate::equilibrium::EquilibriumError;
 const TOLERANCE: f64 = 0.005;
 /// A stretch over which a value moves more than this (log10) is always divided.
 const FAR_APART: f64 = 1.0;
-/// Where a wall is crossed by more than this (log10), nothing hangs on the uncertainty any more: the band is drawn from a
-/// coarser one.
-const FAR_OVER: f64 = 1.0;
-const COARSER: f64 = 6.0;
 
 /// Uncertainty of every value at every place and moment of a leg: `[place][moment][value]`.
 ///
@@ -61,12 +57,9 @@ fn divide(
     let (Some(a), Some(b), Some(m)) = (&known[from], &known[to], &known[middle]) else { return Ok(()) };
     let share = (middle - from) as f64 / (to - from) as f64;
     let values = |moment: usize| &leg[moment].values[place];
-    let over = [from, to].iter().all(|&moment| judge.nearest(values(moment)) > FAR_OVER);
-    let slack = if over { COARSER } else { 1.0 };
     let (before, after) = (values(from), values(to));
     let doubted = (0..m.len()).filter(|&i| judge.counts(i, before[i].max(after[i]))).any(|i| {
-        (a[i] + share * (b[i] - a[i]) - m[i]).abs() > slack * TOLERANCE
-            || (before[i] - after[i]).abs() > slack * FAR_APART
+        (a[i] + share * (b[i] - a[i]) - m[i]).abs() > TOLERANCE || (before[i] - after[i]).abs() > FAR_APART
     });
     if doubted {
         divide(judge, leg, place, (from, middle), known)?;

@@ -196,11 +196,6 @@ impl<'a> Judge<'a> {
         matches!(self.followed[value], Followed::Free(_)) || log10 > FAR
     }
 
-    /// log10 of the excess over the nearest wall at a place with these values, by plain numbers.
-    pub fn nearest(&self, values: &[f64]) -> f64 {
-        (0..self.walls.len()).map(|wall| self.excess(wall, values, None)).fold(f64::NEG_INFINITY, f64::max)
-    }
-
     fn crossed(&self, values: &[f64], sigmas: Option<&[f64]>) -> bool {
         (0..self.walls.len()).any(|wall| self.excess(wall, values, sigmas) > 0.0)
     }

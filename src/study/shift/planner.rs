@@ -8,9 +8,6 @@ use crate::bath::{Adjustment, Bath, Running};
 use crate::dosing::{Direction, Measured, measure};
 use crate::equilibrium::EquilibriumError;
 
-/// Largest share of an agent in the bath that one addition may bring, when the project names none (common practice:
-/// 15 %).
-const ADDITION_CAP: f64 = 0.15;
 /// Everything that a trial needs.
 pub struct Planner<'a> {
     pub running: &'a Running<'a>,
@@ -169,9 +166,4 @@ impl<'a> Planner<'a> {
         let add = mixture.per_gram.iter().map(|moles| moles * dose_g_l).collect();
         Change { step, keep: 1.0, add, doses }
     }
-}
-
-/// Largest share of an agent in the bath that one addition may bring.
-pub fn addition_cap(bath: &Bath) -> f64 {
-    bath.project.sheet.addition_cap_percent.map_or(ADDITION_CAP, |percent| percent / 100.0)
 }

@@ -7,11 +7,11 @@
 
 use super::bail_out::{BailOut, bail_out};
 use super::forecast::{Forecast, replay};
-use super::planner::{Mixture, Planner, addition_cap};
+use super::planner::{Mixture, Planner};
 use super::stirred::Contents;
 use super::walk::Change;
 use crate::bath::{Adjustment, Replenish, Running};
-use crate::dosing::{Direction, Measured, measure, plan};
+use crate::dosing::{Direction, Measured, addition_cap, measure, plan};
 use crate::equilibrium::EquilibriumError;
 
 /// Sizes of a top-up that are compared.
